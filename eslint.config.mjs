@@ -1,0 +1,21 @@
+import withNuxt from './.nuxt/eslint.config.mjs'
+
+// Arrows point one way: app and server -> shared/schemas -> shared/acoustics; server/api -> server/utils -> db.
+const forbid = (...groups) => ({ 'no-restricted-imports': ['error', { patterns: groups.map(([group, message]) => ({ group, message })) }] })
+
+export default withNuxt(
+  { rules: { 'vue/multi-word-component-names': 'off', 'no-console': 'error', '@typescript-eslint/no-explicit-any': 'error' } },
+  {
+    files: ['shared/**/*.ts'],
+    rules: forbid([['vue', 'nuxt*', '#*', 'h3', 'kysely', 'pg', '~/*', '~~/app/*', '~~/server/*', '~~/db/*', '**/server/*', '**/db/*', '**/app/*'], 'shared/ knows no Nuxt, Vue, HTTP or SQL']),
+  },
+  {
+    files: ['shared/acoustics/**/*.ts'],
+    rules: forbid([['[a-z@#~]*'], 'shared/acoustics imports nothing but itself']),
+  },
+  {
+    files: ['server/api/**/*.ts'],
+    rules: forbid([['kysely', 'pg', 'stripe', '~~/db/*', '**/db/*'], 'routes hold no SQL and call no service: put it in server/utils']),
+  },
+  { files: ['local/**', 'scripts/**', 'db/seed/**', 'tests/**', 'build/**'], rules: { 'no-console': 'off' } },
+)
