@@ -1,0 +1,68 @@
+import type { ColumnType, Generated, Insertable, Selectable, Updateable } from 'kysely'
+
+type CreatedAt = ColumnType<Date, Date | undefined, never>
+
+export interface FilmsTable {
+  /** A short readable key, e.g. 'pet-250'. */
+  id: string
+  name: string
+  material: 'pet' | 'skin' | 'woven' | 'other'
+  plies: number
+  /** One ply's thickness, um. */
+  thickness_um: number
+  density_kg_m3: number
+  modulus_gpa: number
+  poisson: number
+  yield_mpa: number
+  /** Whole head with its coating, kg/m2. */
+  areal_density_kg_m2: number
+  coating: string | null
+  position: number
+  active: Generated<boolean>
+}
+export type FilmRow = Selectable<FilmsTable>
+
+export interface InstrumentsTable {
+  id: Generated<string>
+  /** Workshop number, e.g. TA-0147. */
+  code: Generated<string>
+  name: string
+  construction: 'open' | 'frame' | 'double-headed' | 'kettle' | 'fixture'
+  diameter_mm: number
+  depth_mm: number
+  bowl_volume_l: number | null
+  rod_count: number
+  thread_pitch_mm: number
+  hoop: string | null
+  note: string | null
+  customer_id: string | null
+  created_by: string | null
+  created_at: CreatedAt
+  updated_at: Generated<Date>
+}
+export type InstrumentRow = Selectable<InstrumentsTable>
+export type NewInstrument = Insertable<InstrumentsTable>
+export type InstrumentPatch = Updateable<InstrumentsTable>
+
+export interface HeadsTable {
+  id: Generated<string>
+  instrument_id: string
+  side: 'batter' | 'resonant'
+  film_id: string | null
+  material: 'pet' | 'skin' | 'woven' | 'other'
+  plies: number
+  thickness_um: number
+  density_kg_m3: number
+  modulus_gpa: number
+  poisson: number
+  yield_mpa: number
+  areal_density_kg_m2: number
+  coating: string | null
+  /** Learned share of the ideal tension rise per turn, with its variance and how many passes taught it. */
+  kappa: number | null
+  kappa_variance: number | null
+  kappa_passes: Generated<number>
+  created_at: CreatedAt
+}
+export type HeadRow = Selectable<HeadsTable>
+export type NewHead = Insertable<HeadsTable>

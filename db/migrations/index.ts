@@ -1,0 +1,7 @@
+import type { Migration } from 'kysely'
+import * as start from './20261201_0001_start'
+
+/** In order; frozen once merged. Listed statically so that the same list runs under tsx, in tests and in the built server. */
+export const migrations: Record<string, Migration> = {
+  '20261201_0001_start': start,
+}

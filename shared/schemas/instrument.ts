@@ -1,0 +1,104 @@
+import { z } from 'zod'
+import { idSchema, limitSchema, nameSchema, noteSchema } from './common'
+
+export const constructionSchema = z.enum(['open', 'frame', 'double-headed', 'kettle', 'fixture'], 'Choose open, frame, double-headed, kettle or fixture.')
+export const headSideSchema = z.enum(['batter', 'resonant'])
+export const filmMaterialSchema = z.enum(['pet', 'skin', 'woven', 'other'])
+
+const between = (low: number, high: number, what: string, unit: string) =>
+  z.number(`${what} is a number${unit && ` in ${unit}`}.`).min(low, `${what} is at least ${low}${unit && ` ${unit}`}.`).max(high, `${what} is at most ${high}${unit && ` ${unit}`}.`)
+
+export const filmSchema = z.object({
+  material: filmMaterialSchema,
+  /** Laminates of more than four plies are not made as drumheads (common practice, no source). */
+  plies: between(1, 4, 'Plies', '').int('Plies is a whole number.'),
+  /** 20 um is thinner than any drum film, 3 mm thicker than any skin. */
+  thicknessUm: between(20, 3000, 'Thickness of one ply', 'µm'),
+  densityKgM3: between(300, 3000, 'Film density', 'kg/m³'),
+  modulusGPa: between(0.1, 200, 'Film modulus', 'GPa'),
+  /** Thermodynamics bounds an isotropic solid at 0.5. */
+  poisson: between(0, 0.49, 'Poisson ratio', ''),
+  yieldMPa: between(1, 2000, 'Yield stress', 'MPa'),
+})
+
+export const headInputSchema = z.object({
+  side: headSideSchema,
+  filmId: z.string().max(60).nullish(),
+  film: filmSchema,
+  /** The whole head, coating included; overrides plies x thickness x density. */
+  arealDensityKgM2: between(0.02, 5, 'Areal density', 'kg/m²').nullish(),
+  coating: z.string().trim().max(60).nullish(),
+})
+
+const instrumentFields = z.object({
+  name: nameSchema,
+  construction: constructionSchema,
+  /** From a 3 in hand drum to a concert bass drum of 60 in. */
+  diameterMm: between(75, 1600, 'Vibrating diameter', 'mm'),
+  depthMm: between(0, 1600, 'Shell depth', 'mm'),
+  bowlVolumeL: between(1, 600, 'Bowl volume', 'litres').nullish(),
+  /** 24: the largest round that can be read rod by rod. */
+  rodCount: between(3, 24, 'Rods', '').int('Rods is a whole number.'),
+  threadPitchMm: between(0.3, 5, 'Thread pitch', 'mm').default(1.058),
+  hoop: z.string().trim().max(60).nullish(),
+  note: noteSchema.nullish(),
+  customerId: idSchema.nullish(),
+})
+
+export const instrumentBody = instrumentFields.extend({
+  heads: z.array(headInputSchema).min(1, 'Give the batter head at least.').max(2, 'A drum has at most two heads.'),
+}).superRefine((drum, context) => {
+  const issue = (path: (string | number)[], message: string) => context.addIssue({ code: 'custom', path, message })
+  const sides = drum.heads.map(head => head.side)
+  if (!sides.includes('batter')) issue(['heads'], 'Give the batter head.')
+  if (new Set(sides).size !== sides.length) issue(['heads'], 'Each side carries one head.')
+  if (drum.construction === 'double-headed' && !sides.includes('resonant')) issue(['heads'], 'A double-headed drum needs its resonant head too.')
+  if (drum.construction !== 'double-headed' && sides.includes('resonant')) issue(['heads'], 'Only a double-headed drum has a resonant head.')
+  if (drum.construction === 'kettle' && !drum.bowlVolumeL) issue(['bowlVolumeL'], 'A kettle needs its bowl volume in litres.')
+  if ((drum.construction === 'open' || drum.construction === 'double-headed') && drum.depthMm <= 0) issue(['depthMm'], 'This construction needs a shell depth.')
+})
+export type InstrumentBody = z.infer<typeof instrumentBody>
+export type InstrumentInput = z.input<typeof instrumentBody>
+
+export const instrumentPatchBody = instrumentFields.omit({ construction: true }).partial()
+export type InstrumentPatchBody = z.infer<typeof instrumentPatchBody>
+
+/** New film on a head: what was learned of its rods is forgotten. */
+export const headPatchBody = headInputSchema.omit({ side: true })
+
+export const instrumentQuery = z.object({
+  limit: limitSchema.default(50),
+  q: z.string().trim().max(100).optional(),
+  cursor: z.string().max(200).optional(),
+})
+
+export interface HeadView {
+  id: string
+  side: 'batter' | 'resonant'
+  filmId: string | null
+  film: z.infer<typeof filmSchema>
+  arealDensityKgM2: number
+  coating: string | null
+  /** What applied turn sheets taught of this head's rods; null before the first. */
+  learned: { kappa: number, passes: number } | null
+}
+
+export interface InstrumentView {
+  id: string
+  code: string
+  name: string
+  construction: z.infer<typeof constructionSchema>
+  diameterMm: number
+  depthMm: number
+  bowlVolumeL: number | null
+  rodCount: number
+  threadPitchMm: number
+  hoop: string | null
+  note: string | null
+  customerId: string | null
+  customerName: string | null
+  createdAt: string
+  heads: HeadView[]
+  /** The newest reading of any head, for lists. */
+  lastReading: { id: string, takenAt: string, side: 'batter' | 'resonant', tensionNPerM: number, fundamentalHz: number } | null
+}

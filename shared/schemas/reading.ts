@@ -1,0 +1,71 @@
+import { z } from 'zod'
+import { idSchema, limitSchema, noteSchema, numeric } from './common'
+
+export const strikeSchema = z.enum(['centre', 'edge', 'round'], 'strike is centre, edge or round.')
+
+const flag = z.union([z.boolean(), z.enum(['true', 'false', '1', '0']).transform(text => text === 'true' || text === '1')])
+const rodNumber = numeric('A rod is a whole number.').pipe(z.number().int('A rod is a whole number.').min(1, 'Rods count from 1.').max(24, 'A head has at most 24 rods.'))
+
+/** The text fields that travel with an uploaded recording. */
+export const recordingFields = z.object({
+  strike: strikeSchema,
+  rod: rodNumber.optional(),
+  firstRod: rodNumber.default(1),
+  centreDamped: flag.optional(),
+  /** From an unheated shed to a hot stage. */
+  temperatureC: numeric('Temperature is a number in °C.').pipe(z.number().min(-10, 'Temperature is at least -10 °C.').max(50, 'Temperature is at most 50 °C.')).default(20),
+  note: noteSchema.optional(),
+  privateToMaker: flag.default(false),
+})
+export type RecordingFields = z.infer<typeof recordingFields>
+
+/** 50 MB: two minutes of 96 kHz stereo at 16 bit, with room. */
+export const MAX_UPLOAD_BYTES = 50 * 1024 * 1024
+
+export const readingSorts = ['takenAt', 'tension', 'fundamental', 'evenness', 'instrument', 'owner'] as const
+
+export const readingsQuery = z.object({
+  limit: limitSchema.default(50),
+  page: numeric('page is a whole number.').pipe(z.number().int().min(1)).optional(),
+  cursor: z.string().max(400).optional(),
+  /** A field of readingSorts, with - in front for descending. */
+  sort: z.string().regex(new RegExp(`^-?(${readingSorts.join('|')})$`), `sort is one of ${readingSorts.join(', ')}, with - in front for descending.`).default('-takenAt'),
+  q: z.string().trim().max(100).optional(),
+  instrumentId: idSchema.optional(),
+  headId: idSchema.optional(),
+  customerId: idSchema.optional(),
+  takenBy: idSchema.optional(),
+  construction: z.enum(['open', 'frame', 'double-headed', 'kettle', 'fixture']).optional(),
+  side: z.enum(['batter', 'resonant']).optional(),
+  doubtful: flag.optional(),
+  from: z.iso.date('Write the date as 2026-12-01.').optional(),
+  to: z.iso.date('Write the date as 2026-12-01.').optional(),
+  minTension: numeric('Tension is a number in N/m.').optional(),
+  maxTension: numeric('Tension is a number in N/m.').optional(),
+  minHz: numeric('Pitch is a number in Hz.').optional(),
+  maxHz: numeric('Pitch is a number in Hz.').optional(),
+})
+export type ReadingsQuery = z.infer<typeof readingsQuery>
+
+/** One row of the instrument history table. */
+export interface ReadingRowView {
+  id: string
+  takenAt: string
+  instrumentId: string
+  instrumentCode: string
+  instrumentName: string
+  construction: string
+  ownerName: string | null
+  headId: string
+  side: 'batter' | 'resonant'
+  strike: 'centre' | 'edge' | 'round'
+  tension: { nPerM: number, u95NPerM: number }
+  fundamentalHz: number
+  evennessPercent: number | null
+  temperatureC: number
+  confidence: number
+  doubtful: boolean
+  makerName: string | null
+}
+
+export interface ReadingsPage { items: ReadingRowView[], total: number, next: string | null }

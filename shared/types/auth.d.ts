@@ -1,0 +1,14 @@
+declare module '#auth-utils' {
+  interface User {
+    id: string
+    name: string
+    email: string
+    role: 'owner' | 'maker' | 'staff' | 'customer'
+  }
+  interface SecureSessionData {
+    /** Row in `sessions`; the cookie alone proves nothing. */
+    sessionId: string
+  }
+}
+
+export {}

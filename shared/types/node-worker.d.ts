@@ -1,0 +1,4 @@
+declare module '*?node-worker' {
+  const url: () => URL
+  export default url
+}
