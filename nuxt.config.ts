@@ -1,13 +1,10 @@
 import { nodeWorkerPlugin } from './build/node-worker-plugin'
 
 export default defineNuxtConfig({
-  compatibilityDate: '2026-11-01',
-  devtools: { enabled: false },
-  telemetry: false,
   modules: ['@nuxt/eslint', '@nuxtjs/tailwindcss', '@pinia/nuxt', '@vueuse/nuxt', 'nuxt-auth-utils', 'nuxt-security'],
-  css: ['~/assets/tokens.css', '~/assets/base.css'],
   components: [{ path: '~/components', pathPrefix: false }],
   imports: { dirs: ['stores'] },
+  devtools: { enabled: false },
   app: {
     head: {
       htmlAttrs: { lang: 'en' },
@@ -24,6 +21,7 @@ export default defineNuxtConfig({
       ],
     },
   },
+  css: ['~/assets/tokens.css', '~/assets/base.css'],
   runtimeConfig: {
     databaseUrl: '',
     dataDir: '',
@@ -35,30 +33,16 @@ export default defineNuxtConfig({
     mailFrom: '',
     session: { name: 'rimwright-session', password: '', cookie: { secure: false, sameSite: 'lax' } },
   },
-  security: {
-    rateLimiter: false,
-    requestSizeLimiter: false,
-    xssValidator: false,
-    corsHandler: false,
-    headers: {
-      crossOriginEmbedderPolicy: false,
-      strictTransportSecurity: false,
-      permissionsPolicy: { microphone: ['self'], 'screen-wake-lock': ['self'] },
-      contentSecurityPolicy: {
-        'upgrade-insecure-requests': false,
-        'img-src': ["'self'", 'data:', 'blob:'],
-        'media-src': ["'self'", 'blob:'],
-        'worker-src': ["'self'", 'blob:'],
-        'connect-src': ["'self'"],
-        'font-src': ["'self'"],
-      },
-    },
-  },
+  compatibilityDate: '2026-11-01',
   nitro: {
     preset: 'node-server',
+    imports: { dirs: ['server/utils/**'] },
     externals: { inline: ['wavefile'] },
     rollupConfig: { plugins: [nodeWorkerPlugin()] },
     routeRules: { '/fonts/**': { headers: { 'cache-control': 'public, max-age=31536000, immutable' } } },
+  },
+  vite: {
+    optimizeDeps: { include: ['reka-ui', 'vee-validate', 'zod', '@tanstack/vue-table', 'd3-scale', 'd3-shape', 'd3-array'] },
   },
   typescript: {
     strict: true,
@@ -67,8 +51,25 @@ export default defineNuxtConfig({
       exclude: ['../tests/nuxt/**/*'],
     },
   },
+  telemetry: false,
   eslint: { config: { stylistic: { semi: false, quotes: 'single', commaDangle: 'always-multiline', braceStyle: '1tbs' } } },
-  vite: {
-    optimizeDeps: { include: ['reka-ui', 'vee-validate', 'zod', '@tanstack/vue-table', 'd3-scale', 'd3-shape', 'd3-array'] },
+  security: {
+    rateLimiter: false,
+    requestSizeLimiter: false,
+    xssValidator: false,
+    corsHandler: false,
+    headers: {
+      crossOriginEmbedderPolicy: false,
+      strictTransportSecurity: false,
+      permissionsPolicy: { 'microphone': ['self'], 'screen-wake-lock': ['self'] },
+      contentSecurityPolicy: {
+        'upgrade-insecure-requests': false,
+        'img-src': ['\'self\'', 'data:', 'blob:'],
+        'media-src': ['\'self\'', 'blob:'],
+        'worker-src': ['\'self\'', 'blob:'],
+        'connect-src': ['\'self\''],
+        'font-src': ['\'self\''],
+      },
+    },
   },
 })

@@ -1,0 +1,26 @@
+import { sessionHooks } from '#imports'
+
+/**
+ * Start: settings are checked before anything serves. End: the queue finishes its job, then the worker threads, and the
+ * database last, because close hooks run in order and all of them need it.
+ */
+export default defineNitroPlugin((nitro) => {
+  const config = getConfig()
+  log.info({ publicUrl: config.publicUrl }, 'starting')
+  startJobs().catch(error => log.error({ err: error }, 'job queue did not start'))
+
+  // What the browser is told of its session comes from the row, so a revoked session disappears there too.
+  sessionHooks.hook('fetch', async (session, event) => {
+    const user = await findUser(event)
+    if (!user) {
+      await clearUserSession(event)
+      throw createError({ statusCode: 401, statusMessage: 'Unauthorized', message: 'Your session has ended.' })
+    }
+    session.user = user
+  })
+
+  nitro.hooks.hook('close', async () => {
+    await stopJobs()
+    await closeDb()
+  })
+})

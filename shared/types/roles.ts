@@ -1,0 +1,2 @@
+export type { Role } from '../schemas/common'
+export type { SignedInUser } from '../schemas/people'
