@@ -1,0 +1,108 @@
+import { subtractFromRing, type DecayingTone } from './decay'
+import { powerOf, ringWindow, spectrumOf } from './spectrum'
+
+export interface Candidate { frequencyHz: number, gammaPerS: number, power: number }
+
+export interface Search {
+  sampleRateHz: number
+  fromHz: number
+  toHz: number
+}
+
+export interface SearchResult {
+  /** Strongest first. */
+  candidates: Candidate[]
+  /** Windowed power that a new line must exceed, per block of BLOCK_HZ from fromHz. */
+  threshold: Float64Array
+}
+
+/** Longest stretch that is searched, s: 2 Hz resolution; what rings longer is as loud in it as what does not. */
+const SEARCH_S = 0.5
+const RISE_S = 0.012
+const LATER_S = 0.08
+export const BLOCK_HZ = 40
+/** Above the mean noise power by this much: with some 4000 places to look, noise alone reaches 10 dB about once. */
+const ABOVE_NOISE = 10 ** 1.3
+/** Below the strongest line by more than this, a peak is quantisation, distortion or the filter's own leak. */
+const DYNAMIC_RANGE = 10 ** -5.8
+/** A peak on the flank of lines already fitted must reach this share of their own power there: the room's tail ripples below it. */
+const AGAINST_FLANK = 0.25
+/** Quantile of exponentially distributed noise power taken as its level, and what part of the mean that is: -ln(1 - q). */
+const NOISE_QUANTILE = 0.3
+const QUANTILE_OF_MEAN = -Math.log(1 - NOISE_QUANTILE)
+
+/**
+ * Peaks of the ring that the lines found so far do not explain.
+ *
+ * Noise level: the 30 % quantile of the power in blocks of 40 Hz, which lines in a block hardly move.
+ * @param ring      from the start of the ring
+ * @param known     lines to take off first
+ * @param strongest largest windowed power of the untouched ring, 0 in the first round
+ */
+export function findCandidates(ring: Float64Array, search: Search, known: DecayingTone[], most: number): SearchResult {
+  const rate = search.sampleRateHz
+  const length = Math.min(ring.length, Math.round(SEARCH_S * rate))
+  const rest = ring.slice(0, Math.min(ring.length, length + Math.round(LATER_S * rate)))
+  subtractFromRing(rest, rate, known)
+  const window = ringWindow(length, Math.min(Math.round(RISE_S * rate), length >> 2))
+  const whole = spectrumOf(ring.subarray(0, length), rate, window, 2 * length)
+  const left = spectrumOf(rest.subarray(0, length), rate, window, 2 * length)
+  const power = powerOf(left)
+  const flank = new Float64Array(power.length)
+  for (let k = 0; k < flank.length; k++) flank[k] = (whole.bins[2 * k]! - left.bins[2 * k]!) ** 2 + (whole.bins[2 * k + 1]! - left.bins[2 * k + 1]!) ** 2
+  const strongest = powerOf(whole).reduce((max, p) => Math.max(max, p), 0)
+  const threshold = noiseLevel(power, left.stepHz, search).map(level => Math.max(ABOVE_NOISE * level, DYNAMIC_RANGE * strongest))
+  const peaks = localPeaks(power, left.stepHz, search)
+    .filter(peak => peak.power > threshold[blockOf(peak.frequencyHz, search, threshold.length)]! && peak.power > AGAINST_FLANK * flank[peak.bin]!)
+    .sort((a, b) => b.power - a.power)
+  const later = laterPower(rest, rate, length)
+  const candidates: Candidate[] = []
+  for (const peak of peaks) {
+    if (candidates.length >= most) break
+    if (candidates.some(c => peak.power < c.power * (3 / (peak.frequencyHz - c.frequencyHz)) ** 2)) continue
+    const fall = Math.log(peak.power / Math.max(1e-300, later(peak.bin))) / 2 / LATER_S
+    candidates.push({ frequencyHz: peak.frequencyHz, gammaPerS: Math.max(0.5, Math.min(80, fall)), power: peak.power })
+  }
+  return { candidates, threshold }
+}
+
+/** Power at a bin of the same search made LATER_S later: how fast each peak falls. */
+function laterPower(rest: Float64Array, rate: number, length: number): (bin: number) => number {
+  const shift = Math.min(Math.round(LATER_S * rate), rest.length >> 1)
+  const part = rest.subarray(shift, shift + length)
+  const power = powerOf(spectrumOf(part, rate, ringWindow(length, Math.min(Math.round(RISE_S * rate), length >> 2)).subarray(0, part.length), 2 * length))
+  return bin => power[bin]!
+}
+
+function blockOf(frequencyHz: number, search: Search, blocks: number): number {
+  return Math.max(0, Math.min(blocks - 1, Math.floor((frequencyHz - search.fromHz) / BLOCK_HZ)))
+}
+
+/** Mean noise power in each block, smoothed with its neighbours. */
+function noiseLevel(power: Float64Array, stepHz: number, search: Search): Float64Array {
+  const blocks = Math.max(1, Math.ceil((search.toHz - search.fromHz) / BLOCK_HZ))
+  const raw = new Float64Array(blocks)
+  for (let b = 0; b < blocks; b++) {
+    const lo = Math.ceil((search.fromHz + b * BLOCK_HZ) / stepHz)
+    const part = power.slice(lo, Math.min(power.length, lo + Math.ceil(BLOCK_HZ / stepHz))).sort()
+    raw[b] = (part[Math.floor(NOISE_QUANTILE * part.length)] ?? 0) / QUANTILE_OF_MEAN
+  }
+  return raw.map((_, b) => {
+    const near = raw.slice(Math.max(0, b - 2), b + 3).sort()
+    return near[near.length >> 1]!
+  })
+}
+
+function localPeaks(power: Float64Array, stepHz: number, search: Search) {
+  const peaks: { bin: number, frequencyHz: number, power: number }[] = []
+  const last = Math.min(power.length - 2, Math.floor(search.toHz / stepHz))
+  for (let k = Math.max(1, Math.ceil(search.fromHz / stepHz)); k <= last; k++) {
+    const [a, b, c] = [power[k - 1]!, power[k]!, power[k + 1]!]
+    if (b <= a || b < c) continue
+    // Vertex of the parabola through the three levels: within a twentieth of a bin, enough to start the fit from.
+    const [la, lb, lc] = [Math.log(a + 1e-300), Math.log(b), Math.log(c + 1e-300)]
+    const shift = (la - lc) / (2 * (la - 2 * lb + lc))
+    peaks.push({ bin: k, frequencyHz: (k + shift) * stepHz, power: b })
+  }
+  return peaks
+}
