@@ -65,8 +65,7 @@ export function killGroup(child: ChildProcess): void {
   if (child.pid === undefined) return
   try {
     process.kill(-child.pid, 'SIGKILL')
-  }
-  catch {
+  } catch {
     // Ended already.
   }
 }

@@ -41,8 +41,7 @@ export async function startCluster(options: ClusterOptions): Promise<Cluster> {
   const stop = () => stopServer(bin, data)
   try {
     await ensureDatabase(port, options)
-  }
-  catch (error) {
+  } catch (error) {
     await stop()
     throw error
   }
@@ -66,8 +65,7 @@ async function initialise(data: string, options: ClusterOptions): Promise<void> 
       '-D', part, '-U', 'postgres', `--pwfile=${passwordFile}`, '--auth=scram-sha-256', '--encoding=UTF8', '--locale=C.UTF-8',
       ...(options.durable ? [] : ['--no-sync']),
     ])
-  }
-  finally {
+  } finally {
     await rm(passwordFile, { force: true })
   }
   await rename(part, data)
@@ -82,8 +80,7 @@ async function startServer(bin: string, data: string, options: ClusterOptions): 
   ]
   try {
     await runAsDatabaseUser(join(bin, 'pg_ctl'), ['start', '-D', data, '-w', '-t', String(START_LIMIT_S), '-l', log, '-o', settings.join(' ')])
-  }
-  catch {
+  } catch {
     throw new Error(`PostgreSQL did not start. Its log, ${log}, ends:\n${lastLines(log)}`)
   }
   return port
@@ -121,8 +118,7 @@ async function ensureDatabase(port: number, options: ClusterOptions): Promise<vo
     await client.query(`${role.rowCount ? 'alter' : 'create'} role ${NAME} login createdb password ${password}`)
     const database = await client.query('select 1 from pg_database where datname = $1', [NAME])
     if (!database.rowCount) await client.query(`create database ${NAME} owner ${NAME}`)
-  }
-  finally {
+  } finally {
     await client.end()
   }
 }
@@ -134,8 +130,7 @@ async function connectPatiently(config: pg.ClientConfig): Promise<pg.Client> {
     try {
       await client.connect()
       return client
-    }
-    catch (error) {
+    } catch (error) {
       await client.end().catch(() => undefined)
       const code = (error as { code?: string }).code
       // 57P03: the database system is starting up or shutting down.
@@ -144,4 +139,3 @@ async function connectPatiently(config: pg.ClientConfig): Promise<pg.Client> {
     }
   }
 }
-

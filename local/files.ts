@@ -9,8 +9,7 @@ export async function writeWhole(file: string, text: string, mode = 0o600): Prom
   const handle = await open(part, 'w', mode)
   try {
     await handle.writeFile(text)
-  }
-  finally {
+  } finally {
     await handle.close()
   }
   await chmod(part, mode)
@@ -22,15 +21,13 @@ export function readJson(file: string): unknown {
   let text: string
   try {
     text = readFileSync(file, 'utf8')
-  }
-  catch (error) {
+  } catch (error) {
     if ((error as NodeJS.ErrnoException).code === 'ENOENT') return undefined
     throw error
   }
   try {
     return JSON.parse(text)
-  }
-  catch {
+  } catch {
     throw new Error(`${file} is not valid JSON. Move it away to start without it.`)
   }
 }
@@ -54,8 +51,7 @@ export function openLog(file: string): { fd: number, close: () => void } {
 export function lastLines(file: string, count = 15): string {
   try {
     return readFileSync(file, 'utf8').trimEnd().split('\n').slice(-count).join('\n')
-  }
-  catch {
+  } catch {
     return ''
   }
 }

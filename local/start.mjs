@@ -7,8 +7,7 @@ try {
   requireNode()
   await ensurePackages(process.env.DATABASE_URL ? [] : ['postgresql'])
   await ensureNodeModules()
-}
-catch (error) {
+} catch (error) {
   console.error(error instanceof Error ? error.message : error)
   process.exit(1)
 }
