@@ -37,17 +37,30 @@ export function halfSpaceTables(): AirTable[] {
   return tables
 }
 
+export interface Node { x: number, weight: number, part: 're' | 'im' }
+
+const far = panels([...evenEdges(0, 30, 30), ...evenEdges(31.5, 150, 80)], 8)
+const near = panels([0, 1], 24)
+
+/** Nodes and weights of the integral at one kappa: sum weight h(x) h'(x) over each part. */
+export function halfSpaceNodes(kappa: number): Node[] {
+  const nodes: Node[] = Array.from(far.x, (y, i) => ({ x: Math.hypot(kappa, y), weight: far.w[i]!, part: 're' }))
+  // y = kappa sin t keeps the nodes dense where x falls to zero.
+  for (let i = 0; i < near.x.length && kappa > 0; i++) {
+    const x = kappa * Math.cos(near.x[i]! * Math.PI / 2)
+    nodes.push({ x, weight: near.w[i]! * Math.PI / 2 * x, part: 'im' })
+  }
+  return nodes
+}
+
 function build(): AirTable[] {
   const made: AirTable[] = alphas.map(() => ({ rows: [] }))
-  const far = panels([...evenEdges(0, 30, 30), ...evenEdges(31.5, 150, 80)], 8)
-  const near = panels([0, 1], 24)
   const jmx = new Float64Array(M_MAX + 2)
   const h = new Float64Array(BASIS)
   const count = Math.round(KAPPA_MAX / KAPPA_STEP) + 1
   for (let step = 0; step < count; step++) {
-    const kappa = step * KAPPA_STEP
     const rows = made.map(() => ({ re: new Float64Array(BASIS * BASIS), im: new Float64Array(BASIS * BASIS) }))
-    const gather = (x: number, weight: number, part: 're' | 'im'): void => {
+    for (const { x, weight, part } of halfSpaceNodes(step * KAPPA_STEP)) {
       besselJ(M_MAX, x, jmx)
       for (let m = 0; m <= M_MAX; m++) {
         for (let n = 0; n < BASIS; n++) h[n] = shapeTransform(m, n, x, jmx[m]!)
@@ -56,12 +69,6 @@ function build(): AirTable[] {
           for (let j = 0; j < BASIS; j++) target[i * BASIS + j]! += weight * h[i]! * h[j]!
         }
       }
-    }
-    for (let i = 0; i < far.x.length; i++) gather(Math.hypot(kappa, far.x[i]!), far.w[i]!, 're')
-    // y = kappa sin t keeps the nodes dense where x falls to zero.
-    for (let i = 0; i < near.x.length && kappa > 0; i++) {
-      const t = near.x[i]! * Math.PI / 2
-      gather(kappa * Math.cos(t), near.w[i]! * Math.PI / 2 * kappa * Math.cos(t), 'im')
     }
     rows.forEach((row, m) => made[m]!.rows.push(row))
   }

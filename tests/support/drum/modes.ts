@@ -6,9 +6,8 @@
  * Real roots of the lossless problem are counted (so none is missed, air resonances of the shell included), then
  * each is moved to its complex frequency by Newton's method.
  */
-import { add, c, div, mul, scale } from './complex'
+import { add, c, complexMatrix, div, mul, scale } from './complex'
 import type { Complex, ComplexMatrix } from './complex'
-import { complexMatrix } from './complex'
 import { BASIS, KAPPA_MAX, M_MAX, readAirTable } from './airTable'
 import { basisZeros, halfSpaceTables } from './airHalfSpace'
 import { freeDiscTables } from './airFreeDisc'
