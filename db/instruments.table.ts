@@ -36,6 +36,8 @@ export interface InstrumentsTable {
   hoop: string | null
   note: string | null
   customer_id: string | null
+  /** The customer's name, kept by a trigger; empty for the workshop's own. Never written by hand. */
+  owner_name: ColumnType<string, never, never>
   created_by: string | null
   created_at: CreatedAt
   updated_at: Generated<Date>
@@ -62,6 +64,8 @@ export interface HeadsTable {
   kappa: number | null
   kappa_variance: number | null
   kappa_passes: Generated<number>
+  /** When this film was mounted; readings before it say nothing of how its rods pull. */
+  film_since: Generated<Date>
   created_at: CreatedAt
 }
 export type HeadRow = Selectable<HeadsTable>

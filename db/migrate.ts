@@ -1,9 +1,10 @@
 import { Migrator, sql } from 'kysely'
 import { openDatabase } from './database'
 import { migrations } from './migrations'
+import { ensureFilms } from './seed/films'
 
 /**
- * Brings a database to the newest schema. Forward only.
+ * Brings a database to the newest schema, with the film catalogue in it. Forward only.
  * @throws the migrator's own error (which it returns and does not throw)
  */
 export async function migrateToLatest(databaseUrl: string): Promise<string[]> {
@@ -14,6 +15,7 @@ export async function migrateToLatest(databaseUrl: string): Promise<string[]> {
     const migrator = new Migrator({ db, provider: { getMigrations: async () => migrations } })
     const { error, results } = await migrator.migrateToLatest()
     if (error) throw error
+    await ensureFilms(db)
     return (results ?? []).map(result => result.migrationName)
   } finally {
     await db.destroy()

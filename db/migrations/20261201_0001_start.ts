@@ -73,12 +73,30 @@ export async function up(db: Kysely<any>): Promise<void> {
       hoop text,
       note text,
       customer_id uuid references users,
+      -- The customer's name, kept by the triggers below: sorting and searching a million readings by owner must not join for it.
+      owner_name text not null default '',
       created_by uuid references users,
       created_at timestamptz not null default now(),
       updated_at timestamptz not null default now()
     );
     create index instruments_customer on instruments (customer_id);
+    create index instruments_owner on instruments (owner_name, code);
     create index instruments_search on instruments using gin ((code || ' ' || name) gin_trgm_ops);
+    create index instruments_search_with_owner on instruments using gin ((code || ' ' || name || ' ' || owner_name) gin_trgm_ops);
+    create function set_owner_name() returns trigger language plpgsql as $$
+    begin
+      new.owner_name := coalesce((select name from users where id = new.customer_id), '');
+      return new;
+    end $$;
+    create trigger instruments_owner_name before insert or update of customer_id, owner_name on instruments
+      for each row execute function set_owner_name();
+    create function pass_on_owner_name() returns trigger language plpgsql as $$
+    begin
+      update instruments set owner_name = new.name where customer_id = new.id;
+      return null;
+    end $$;
+    create trigger users_owner_name after update of name on users
+      for each row when (old.name is distinct from new.name) execute function pass_on_owner_name();
     create table heads (
       id uuid primary key default gen_random_uuid(),
       instrument_id uuid not null references instruments on delete cascade,
@@ -96,6 +114,7 @@ export async function up(db: Kysely<any>): Promise<void> {
       kappa double precision,
       kappa_variance double precision,
       kappa_passes int not null default 0,
+      film_since timestamptz not null default now(),
       created_at timestamptz not null default now(),
       unique (instrument_id, side)
     );
@@ -145,13 +164,17 @@ export async function up(db: Kysely<any>): Promise<void> {
       analysis_version text not null,
       created_at timestamptz not null default now()
     );
-    create index readings_taken on readings (taken_at desc, id desc);
-    create index readings_instrument on readings (instrument_id, taken_at desc);
-    create index readings_head on readings (head_id, taken_at desc);
+    -- The history table walks these: a sort column and the id, forwards or backwards. A reading without evenness sorts last both ways.
+    alter table readings set (toast_tuple_target = 128);
+    create index readings_taken on readings (taken_at, id);
+    create index readings_instrument on readings (instrument_id, taken_at, id);
+    create index readings_head on readings (head_id, taken_at);
     create index readings_tension on readings (tension_n_per_m, id);
     create index readings_fundamental on readings (fundamental_hz, id);
-    create index readings_evenness on readings (evenness_percent, id);
-    create index readings_taken_by on readings (taken_by, taken_at desc);
+    create index readings_evenness_up on readings ((coalesce(evenness_percent, 'infinity')), id);
+    create index readings_evenness_down on readings ((coalesce(evenness_percent, '-infinity')), id);
+    create index readings_taken_by on readings (taken_by, taken_at, id);
+    create index readings_doubtful on readings (taken_at, id) where doubtful;
     create table turn_sheets (
       id uuid primary key default gen_random_uuid(),
       head_id uuid not null references heads on delete cascade,
@@ -167,6 +190,7 @@ export async function up(db: Kysely<any>): Promise<void> {
       created_at timestamptz not null default now()
     );
     create index turn_sheets_head on turn_sheets (head_id, created_at desc);
+    create index turn_sheets_open on turn_sheets (head_id) where applied_at is not null and next_reading_id is null;
 
     create table price_lists (
       id uuid primary key default gen_random_uuid(),

@@ -39,13 +39,15 @@ const instrumentFields = z.object({
   bowlVolumeL: between(1, 600, 'Bowl volume', 'litres').nullish(),
   /** 24: the largest round that can be read rod by rod. */
   rodCount: between(3, 24, 'Rods', '').int('Rods is a whole number.'),
-  threadPitchMm: between(0.3, 5, 'Thread pitch', 'mm').default(1.058),
+  threadPitchMm: between(0.3, 5, 'Thread pitch', 'mm'),
   hoop: z.string().trim().max(60).nullish(),
   note: noteSchema.nullish(),
   customerId: idSchema.nullish(),
 })
 
 export const instrumentBody = instrumentFields.extend({
+  /** 12-24 UNC, the common drum rod: 1/24 in a turn (ASME B1.1). Stands here, not above: a patch must not bring it back. */
+  threadPitchMm: instrumentFields.shape.threadPitchMm.default(1.058),
   heads: z.array(headInputSchema).min(1, 'Give the batter head at least.').max(2, 'A drum has at most two heads.'),
 }).superRefine((drum, context) => {
   const issue = (path: (string | number)[], message: string) => context.addIssue({ code: 'custom', path, message })
@@ -65,12 +67,15 @@ export type InstrumentPatchBody = z.infer<typeof instrumentPatchBody>
 
 /** New film on a head: what was learned of its rods is forgotten. */
 export const headPatchBody = headInputSchema.omit({ side: true })
+export type HeadPatchBody = z.infer<typeof headPatchBody>
+export const headParams = z.object({ headId: idSchema })
 
 export const instrumentQuery = z.object({
   limit: limitSchema.default(50),
-  q: z.string().trim().max(100).optional(),
+  q: z.string().trim().max(100, 'Search with at most 100 characters.').optional(),
   cursor: z.string().max(200).optional(),
 })
+export type InstrumentQuery = z.infer<typeof instrumentQuery>
 
 export interface HeadView {
   id: string
@@ -101,4 +106,42 @@ export interface InstrumentView {
   heads: HeadView[]
   /** The newest reading of any head, for lists. */
   lastReading: { id: string, takenAt: string, side: 'batter' | 'resonant', tensionNPerM: number, fundamentalHz: number } | null
+}
+
+export interface InstrumentsPage { items: InstrumentView[], total: number, next: string | null }
+
+/** A film of the catalogue. */
+export interface FilmView extends z.infer<typeof filmSchema> {
+  id: string
+  name: string
+  arealDensityKgM2: number
+  coating: string | null
+}
+
+/** All readings and turns of an instrument's heads, oldest first. */
+export interface InstrumentHistoryView {
+  readings: {
+    id: string
+    takenAt: string
+    headId: string
+    side: 'batter' | 'resonant'
+    strike: 'centre' | 'edge' | 'round'
+    tension: { nPerM: number, u95NPerM: number }
+    fundamentalHz: number
+    evennessPercent: number | null
+    temperatureC: number
+    doubtful: boolean
+    makerName: string | null
+  }[]
+  turns: {
+    id: string
+    headId: string
+    side: 'batter' | 'resonant'
+    readingId: string
+    nextReadingId: string | null
+    appliedAt: string
+    meanTurns: number
+    predictedTensionNPerM: number
+    byName: string | null
+  }[]
 }

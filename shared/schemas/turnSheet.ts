@@ -7,7 +7,8 @@ const pitchHz = z.number('Pitch is a number in Hz.').min(20, 'Pitch is at least 
 const tensionNPerM = z.number('Tension is a number in N/m.').min(50, 'Tension is at least 50 N/m.').max(20_000, 'Tension is at most 20 000 N/m.')
 
 export const turnTargetSchema = z.discriminatedUnion('kind', [
-  z.object({ kind: z.literal('pitch'), hz: pitchHz }),
+  /** `of`: the head's (0,1), or for a kettle its principal tone (1,1), which is what a player tunes by. */
+  z.object({ kind: z.literal('pitch'), hz: pitchHz, of: z.enum(['fundamental', 'principal']).default('fundamental') }),
   z.object({ kind: z.literal('tension'), nPerM: tensionNPerM }),
   z.object({ kind: z.literal('reading'), readingId: idSchema }),
   z.object({ kind: z.literal('even') }),
@@ -21,6 +22,7 @@ export const headTargetSchema = z.discriminatedUnion('kind', [
 export type HeadTarget = z.infer<typeof headTargetSchema>
 
 export const turnSheetBody = z.object({ readingId: idSchema, target: turnTargetSchema })
+export type TurnSheetBody = z.infer<typeof turnSheetBody>
 
 const rodTurns = z.object({
   rod: z.number().int('A rod is a whole number.').min(1, 'Rods count from 1.').max(24),
@@ -31,6 +33,7 @@ export const appliedBody = z.object({
   rods: z.array(rodTurns).min(1, 'Say what was turned.').max(24)
     .refine(rods => new Set(rods.map(rod => rod.rod)).size === rods.length, 'Each rod stands once.'),
 })
+export type AppliedBody = z.infer<typeof appliedBody>
 export type RodTurns = z.infer<typeof rodTurns>
 
 /** A turn sheet as the API gives it. */
@@ -42,8 +45,12 @@ export interface TurnSheetView {
   createdAt: string
   target: TurnTarget
   rods: RodTurns[]
+  /** Rod numbers in the order in which to turn them. */
   order: number[]
-  predicted: { tensionNPerM: number, fundamentalHz: number, evennessPercent: number | null }
+  /** After this pass; principalHz only for a kettle. */
+  predicted: { tensionNPerM: number, fundamentalHz: number, evennessPercent: number | null, principalHz: number | null }
+  /** Where all passes together lead. */
+  goal: { tensionNPerM: number, fundamentalHz: number }
   filmStress: { mPa: number, shareOfYield: number }
   cautions: { code: string, message: string }[]
   /** A further pass will be needed after this one. */
