@@ -113,7 +113,7 @@ function localVariance(ring: RingSpectrum, band: BinBand, fit: ToneFit): number[
 /** Drops tones that did not hold up: lost in noise, at the fit's limits, or a faint ghost inside a stronger line's width. */
 export function prune(tones: FittedTone[], toHz: number): FittedTone[] {
   const amplitude = (t: FittedTone) => Math.hypot(t.re, t.im)
-  const kept = tones.filter(t => amplitude(t) > 4 * t.amplitudeError && t.gammaPerS < 0.95 * MAX_GAMMA_PER_S && t.frequencyHz > 15 && t.frequencyHz < toHz)
+  const kept = tones.filter(t => amplitude(t) > 2 * t.amplitudeError && t.gammaPerS < 0.95 * MAX_GAMMA_PER_S && t.frequencyHz > 15 && t.frequencyHz < toHz)
   return kept.filter(t => !kept.some((other) => {
     if (other === t || amplitude(other) < amplitude(t)) return false
     const apart = Math.abs(other.frequencyHz - t.frequencyHz)

@@ -5,19 +5,19 @@ import { spectrumOf } from './spectrum'
 import { splitGroups } from './split'
 import { fitTones } from './toneFit'
 
-/** One partial found in the ring of a tap: a decaying cosine, all figures at the start of the ring (about 8 ms after onset). */
+/** One partial found in the ring of a tap: a decaying cosine, amplitude, level and phase where listening began. */
 export interface SpectralLine {
   /** Damped frequency, Hz. */
   frequencyHz: number
   /** Standard error of frequencyHz, Hz: noise and the room's tail as found in this recording. */
   standardErrorHz: number
-  /** Amplitude at the start of the ring, in units of full scale. */
+  /** Amplitude where listening began (usually 8 ms after the onset), in units of full scale. */
   amplitude: number
   /** Amplitude against the strongest decaying line, dB, <= 0 for decaying lines. */
   levelDb: number
   /** Decay rate: the amplitude falls as exp(-gamma t), 1/s, >= 0. T60 = 6.908 / gamma. */
   gammaPerS: number
-  /** Phase of the cosine at the start of the ring, rad. */
+  /** Phase of the cosine where listening began, rad. */
   phaseRad: number
   /** Does not decay: mains hum, a fan. Never a drum's line. */
   steady: boolean

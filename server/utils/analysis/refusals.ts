@@ -1,0 +1,121 @@
+import type { MonoSound } from './channel'
+import type { LowBand } from './decimate'
+import type { HeardTap } from './listen'
+import { RefusalError } from './refusal'
+import { AFTER_ONSET_S, meanPower } from './ring'
+import type { Tap } from './taps'
+import type { ReadingWarning } from './types'
+
+const SHORTEST_RECORDING_S = 0.1
+/** Below -60 dB of full scale even a 16 bit recording of a tap has only ten bits left. */
+const SILENT_PEAK = 1e-3
+/** Ring that a reading needs at the least, s: 0.15 s tells lines 7 Hz apart. */
+const SHORTEST_RING_S = 0.15
+/** Flat tops in more than this share of the first tenth of the ring bend every line's level and add false ones. */
+const CLIPPED_SHARE = 0.005
+const CLIP_WINDOW_S = 0.1
+/** A tone's own crest can be level for a few samples; three such crests cannot, since a tap's ring falls. */
+const FLAT_SAMPLES = 3
+const FLAT_RUNS = 3
+
+/** Refuses what needs no look at taps: too short to hold one, or nothing recorded. */
+export function refuseEmpty(sound: MonoSound) {
+  if (sound.samples.length < SHORTEST_RECORDING_S * sound.sampleRateHz) {
+    throw new RefusalError('too-short', 'The recording is shorter than a tap. Record a moment of quiet, the tap, and at least a second of its ring.')
+  }
+  if (sound.peak < SILENT_PEAK) {
+    throw new RefusalError('silent', 'The recording is silent. Check that the right microphone is chosen and its gain is up, then tap again.')
+  }
+}
+
+export function refuseNoTap(taps: Tap[]) {
+  if (taps.length === 0) {
+    throw new RefusalError('no-tap', 'No tap was found: nothing in the recording starts suddenly and dies away. Leave a moment of quiet, tap the head once, and let it ring.')
+  }
+}
+
+export interface ClippingFound { share: number, runs: number }
+
+/** Share of the first tenth of a second of the ring, and of its contact, that stands level at the recording's own rails. */
+export function clippingOf(sound: MonoSound, tap: Tap): ClippingFound {
+  const { samples, sampleRateHz, rails } = sound
+  const from = Math.round(tap.atS * sampleRateHz)
+  const ringFrom = Math.round((tap.lastHitS + AFTER_ONSET_S) * sampleRateHz)
+  const to = Math.min(samples.length, ringFrom + Math.round(CLIP_WINDOW_S * sampleRateHz))
+  // Equal to within a 16 bit step: rails of a real converter or of a program are exact.
+  const near = 2 ** -15 * Math.max(1, Math.abs(rails.high), Math.abs(rails.low))
+  let run = 0
+  let runs = 0
+  let level = 0
+  for (let n = Math.max(0, from); n <= to; n++) {
+    const x = (samples[n] ?? 0) + rails.offset
+    if (n < to && (rails.high - x <= near || x - rails.low <= near)) {
+      run++
+      continue
+    }
+    if (run >= FLAT_SAMPLES) {
+      runs++
+      level += Math.max(0, n - Math.max(n - run, ringFrom))
+    }
+    run = 0
+  }
+  return { share: level / Math.max(1, to - ringFrom), runs: runs }
+}
+
+/** Refuses a hard-clipped ring; gives a warning where only the contact or a crest or two is clipped. */
+export function judgeClipping(found: ClippingFound): ReadingWarning[] {
+  if (found.runs < FLAT_RUNS) return []
+  if (found.share > CLIPPED_SHARE) {
+    throw new RefusalError('clipped', 'The tap is clipped: it was louder than the recording can hold. Turn the microphone\'s gain down or tap more softly, and record again.')
+  }
+  return [{ code: 'slightly-clipped', message: 'The loudest moment of the tap is clipped. The reading holds, but a lower gain would make it better.' }]
+}
+
+export function refuseShortRing(heardS: number) {
+  if (heardS < SHORTEST_RING_S) {
+    throw new RefusalError('too-short', 'The ring of the tap is cut off. Let the head ring for at least a second before the recording ends or the next tap comes.')
+  }
+}
+
+/** Share of the ring's energy that decaying lines must explain; speech, claps and cymbals stay below, drums in a hall above. */
+const DRUM_SHARE = 0.5
+const SLOWEST_RISE_S = 0.03
+/** Energy may beat, but no later moment is louder than the first by more than this. */
+const LATE_RISE = 1.6
+
+/** True where a tap starts at once, only falls from there, and is a sum of decaying lines. */
+export function soundsLikeDrum(band: LowBand, heard: HeardTap): boolean {
+  const decaying = heard.findings.lines.filter(line => !line.steady)
+  return decaying.length > 0
+    && heard.findings.explainedShare >= DRUM_SHARE
+    && riseTimeS(band, heard.tap) <= SLOWEST_RISE_S
+    && lateOverEarly(heard) <= LATE_RISE
+}
+
+export function refuseOtherSounds(sounding: boolean[]) {
+  if (sounding.filter(Boolean).length * 2 <= sounding.length) {
+    throw new RefusalError('not-a-drum', 'This does not sound like a tapped head: the sound does not start at once and die away in clear tones. Record only the tap, without speech or music.')
+  }
+}
+
+/** Time from the onset to half of the loudest 10 ms within the next 150 ms, s. */
+export function riseTimeS(band: LowBand, tap: Tap): number {
+  const rate = band.sampleRateHz
+  const first = Math.round(tap.atS * rate + (band.filterLength - 1) / 2 / band.factor)
+  const step = Math.round(0.005 * rate)
+  const powers: number[] = []
+  for (let i = 0; i < 30 && first + (i + 2) * step <= band.samples.length && (tap.atS + 0.005 * i < tap.endS); i++) {
+    powers.push(meanPower(band.samples, first + i * step, first + (i + 2) * step))
+  }
+  const half = Math.max(...powers) / 2
+  return 0.005 * powers.findIndex(p => p >= half)
+}
+
+export function lateOverEarly(heard: HeardTap): number {
+  const { samples, sampleRateHz: rate } = heard.ring
+  const span = Math.round(0.06 * rate)
+  const early = meanPower(samples, 0, Math.min(span, samples.length))
+  let late = 0
+  for (let from = Math.round(0.08 * rate); from + span <= samples.length; from += span >> 2) late = Math.max(late, meanPower(samples, from, from + span))
+  return early > 0 ? late / early : Infinity
+}
