@@ -160,9 +160,17 @@ function toModal(model: Omit<DrumModel, 'roots'>, m: number, omega: Complex, v: 
   return { m, n: 0, head: 'batter', omega: omega.re, gamma: -omega.im, shape, tensionShare: [share[0]!, share[1] ?? 0] }
 }
 
-/** Gives each root the head and shape it holds most of; what is left over is the air's own (n = 0). */
+/**
+ * Gives each root the head and shape it holds most of, the film's own share of its energy counting; what is left
+ * over is a resonance of the shell's air that carries the film along (n = 0).
+ */
 function name(roots: ModalRoot[]): ModalRoot[] {
-  const claims = roots.flatMap((root, at) => root.shape.map((x, i) => ({ at, i, weight: Math.hypot(x.re, x.im) })))
+  const claims = roots.flatMap((root, at) => {
+    const sizes = root.shape.map(x => Math.hypot(x.re, x.im))
+    const most = Math.max(...sizes)
+    const share = Math.sqrt(Math.max(0, root.tensionShare[0] + root.tensionShare[1]))
+    return sizes.map((size, i) => ({ at, i, weight: size * share, own: size >= 0.5 * most })).filter(claim => claim.own)
+  })
   claims.sort((a, b) => b.weight - a.weight)
   const taken = new Set<number>()
   const named = new Set<number>()
