@@ -133,6 +133,7 @@ async function connectPatiently(config: pg.ClientConfig): Promise<pg.Client> {
     } catch (error) {
       await client.end().catch(() => undefined)
       const code = (error as { code?: string }).code
+      if (code === '28P01') throw new Error('The database was made with other passwords than those in state.json. Restore that file, or move the database\'s folder away to start afresh.')
       // 57P03: the database system is starting up or shutting down.
       if (code !== '57P03' || attempt >= START_LIMIT_S * 2) throw error
       await new Promise(resolve => setTimeout(resolve, 500))
