@@ -95,13 +95,12 @@ function fieldIntegrals(kappa0: number): FieldIntegrals {
   return { real, imaginary }
 }
 
-/** 2 b^T A^-1 b with complex A = real + i imaginary, as a real system of twice the size. */
-function fillRow(m: number, row: number, field: FieldIntegrals, table: AirTable): void {
-  const basis = shapeBasis(m)
+/** 2 b^T A^-1 b for all pairs of columns of b, with complex A = real + i imaginary as a real system of twice the size. */
+function massOfShapes(m: number, field: FieldIntegrals, b: Float64Array, columns: number): { mass: Float64Array, loss: Float64Array } {
   const size = 2 * PRESSURE_FUNCTIONS
   const a = new Float64Array(size * size)
-  const right = new Float64Array(size * basis.count)
-  const left = new Float64Array(PRESSURE_FUNCTIONS * basis.count)
+  const right = new Float64Array(size * columns)
+  right.set(b)
   for (let j = 0, at = m * PAIRS; j < PRESSURE_FUNCTIONS; j++) {
     for (let k = 0; k <= j; k++, at++) {
       for (const [r, c] of [[j, k], [k, j]] as const) {
@@ -112,25 +111,43 @@ function fillRow(m: number, row: number, field: FieldIntegrals, table: AirTable)
       }
     }
   }
+  solveInPlace(size, a, right, columns)
+  const mass = new Float64Array(columns * (columns + 1) / 2)
+  const loss = new Float64Array(mass.length)
+  for (let n = 0, at = 0; n < columns; n++) {
+    for (let k = 0; k <= n; k++, at++) {
+      for (let j = 0; j < PRESSURE_FUNCTIONS; j++) {
+        mass[at] = mass[at]! + 2 * b[j * columns + n]! * right[j * columns + k]!
+        loss[at] = loss[at]! - 2 * b[j * columns + n]! * right[(j + PRESSURE_FUNCTIONS) * columns + k]!
+      }
+    }
+  }
+  return { mass, loss }
+}
+
+function fillRow(m: number, row: number, field: FieldIntegrals, table: AirTable): void {
+  const basis = shapeBasis(m)
+  const b = new Float64Array(PRESSURE_FUNCTIONS * basis.count)
   const phi = new Float64Array(HIGHEST + 1)
   for (let n = 0; n < basis.count; n++) {
     pressureTransforms(basis.zeros[n]!, phi)
-    for (let j = 0; j < PRESSURE_FUNCTIONS; j++) {
-      left[j * basis.count + n] = Math.SQRT2 * phi[m + 2 * j + 1]! / basis.slopes[n]!
-      right[j * basis.count + n] = left[j * basis.count + n]!
-    }
+    for (let j = 0; j < PRESSURE_FUNCTIONS; j++) b[j * basis.count + n] = Math.SQRT2 * phi[m + 2 * j + 1]! / basis.slopes[n]!
   }
-  solveInPlace(size, a, right, basis.count)
-  for (let n = 0, at = row * table.width; n < basis.count; n++) {
-    for (let k = 0; k <= n; k++, at++) {
-      let re = 0
-      let im = 0
-      for (let j = 0; j < PRESSURE_FUNCTIONS; j++) {
-        re += left[j * basis.count + n]! * right[j * basis.count + k]!
-        im += left[j * basis.count + n]! * right[(j + PRESSURE_FUNCTIONS) * basis.count + k]!
-      }
-      table.mass[at] = 2 * re
-      table.loss[at] = -2 * im
-    }
-  }
+  const { mass, loss } = massOfShapes(m, field, b, basis.count)
+  table.mass.set(mass, row * table.width)
+  table.loss.set(loss, row * table.width)
+}
+
+/**
+ * Air on both sides of a free disc that moves as one shape x^m cos m theta (m = 0: a piston, m = 1: rocking), by rho0 R.
+ *
+ * Per unit of int_0^1 shape^2 x dx times 2; in whole: kinetic mass = pi rho0 R^3 * mass (m = 0 counts twice).
+ * Only the first pressure function is not orthogonal to such a shape when kappa0 = 0: its projection is (2m)!! / (2m+3)!!.
+ * Source: Lamb, Hydrodynamics, sections 102 (piston: 8/3 rho0 R^3) and 108 (rocking: 16/45 rho0 R^5).
+ */
+export function rigidDiscMass(m: 0 | 1, kappa0: number): { mass: number, loss: number } {
+  const b = new Float64Array(PRESSURE_FUNCTIONS)
+  b[0] = m === 0 ? 1 / 3 : 2 / 15
+  const { mass, loss } = massOfShapes(m, fieldIntegrals(kappa0), b, 1)
+  return { mass: mass[0]!, loss: loss[0]! }
 }

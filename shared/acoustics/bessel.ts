@@ -65,7 +65,7 @@ function check(order: number, x: number): void {
  * @throws RangeError when the order or argument is outside its range
  * Source: NIST DLMF sections 3.6(iii), 10.12.4, 10.17.3.
  */
-export function besselJUpTo(highest: number, x: number, out = new Float64Array(highest + 1)): Float64Array {
+export function besselJUpTo(highest: number, x: number, out: Float64Array = new Float64Array(highest + 1)): Float64Array {
   check(highest, x)
   if (x < 1e-150) {
     out.fill(0, 0, highest + 1)
@@ -122,7 +122,7 @@ export function besselJPrime(m: number, x: number): number {
  * @throws RangeError when the order or argument is outside its range
  * Source: NIST DLMF 10.47, 10.51.1; backward recurrence scaled to the larger of j_0 = sin x / x and j_1.
  */
-export function sphericalBesselUpTo(highest: number, x: number, out = new Float64Array(highest + 1)): Float64Array {
+export function sphericalBesselUpTo(highest: number, x: number, out: Float64Array = new Float64Array(highest + 1)): Float64Array {
   check(highest, x)
   if (x < 1e-100) {
     out.fill(0, 0, highest + 1)

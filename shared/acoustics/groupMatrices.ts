@@ -40,6 +40,9 @@ export class GroupMatrices {
   /** Coupling of each resonance to each shape, row by row. */
   readonly coupling: Float64Array
   readonly resonanceSquared: Float64Array
+  /** Scratch space, size x size, for whoever works with these matrices next. */
+  readonly workA: Float64Array
+  readonly workB: Float64Array
   private readonly stencil: AirStencil = newStencil()
 
   constructor(readonly air: GroupAir, readonly state: GroupState) {
@@ -55,6 +58,8 @@ export class GroupMatrices {
     this.fillCoupling()
     this.stiffness = new Float64Array(this.size * this.size)
     this.fillStiffness()
+    this.workA = new Float64Array(this.size * this.size)
+    this.workB = new Float64Array(this.size * this.size)
   }
 
   private fillHead(from: number, head: HeadState): void {

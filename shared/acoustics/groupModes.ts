@@ -22,9 +22,7 @@ function quadratic(size: number, matrix: Float64Array, x: Float64Array, y: Float
 
 /** Frequency and shape of one mode with the air's mass taken at the mode's own frequency: Rayleigh quotient iteration. */
 function selfConsistent(matrices: GroupMatrices, start: Pair): Pair {
-  const { size, stiffness } = matrices
-  const mass = new Float64Array(size * size)
-  const shifted = new Float64Array(size * size)
+  const { size, stiffness, workA: mass, workB: shifted } = matrices
   let x = start.x
   let square = start.omegaSquared
   for (let round = 0; round < MOST_ROUNDS; round++) {
@@ -137,7 +135,7 @@ function describe(matrices: GroupMatrices, pair: Pair, shape: number): Predicted
   const count = air.basis.count
   const { x, omegaSquared } = pair
   const omega = Math.sqrt(omegaSquared)
-  const work = new Float64Array(size * size)
+  const work = matrices.workA
   matrices.massAt(omega, work)
   const inertia = quadratic(size, work, x, x)
   work.fill(0)
