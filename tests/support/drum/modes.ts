@@ -168,8 +168,8 @@ function name(roots: ModalRoot[]): ModalRoot[] {
   const claims = roots.flatMap((root, at) => {
     const sizes = root.shape.map(x => Math.hypot(x.re, x.im))
     const most = Math.max(...sizes)
-    const share = Math.sqrt(Math.max(0, root.tensionShare[0] + root.tensionShare[1]))
-    return sizes.map((size, i) => ({ at, i, weight: size * share, own: size >= 0.5 * most })).filter(claim => claim.own)
+    const share = Math.max(0, root.tensionShare[0] + root.tensionShare[1])
+    return sizes.map((size, i) => ({ at, i, weight: size * Math.sqrt(share), own: share > 0.2 && size >= 0.5 * most })).filter(claim => claim.own)
   })
   claims.sort((a, b) => b.weight - a.weight)
   const taken = new Set<number>()
