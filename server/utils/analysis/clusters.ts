@@ -33,7 +33,9 @@ export function groupTones<T extends DecayingTone>(sorted: T[]): T[][] {
   const groups: T[][] = []
   for (const tone of sorted) {
     const group = groups.at(-1)
-    if (group && group.length < MOST_TOGETHER && tone.frequencyHz - group.at(-1)!.frequencyHz < TOGETHER_HZ) group.push(tone)
+    const last = group?.at(-1)
+    // Half the sum of the two full widths: there the flanks cross.
+    if (group && last && group.length < MOST_TOGETHER && tone.frequencyHz - last.frequencyHz < Math.max(TOGETHER_HZ, (tone.gammaPerS + last.gammaPerS) / (2 * Math.PI))) group.push(tone)
     else groups.push([tone])
   }
   return groups
@@ -43,9 +45,11 @@ export function groupTones<T extends DecayingTone>(sorted: T[]): T[][] {
 export function bandAround(ring: RingSpectrum, members: DecayingTone[], all: DecayingTone[]): BinBand {
   const step = ring.spectrum.stepHz
   const gamma = Math.max(...members.map(t => t.gammaPerS))
-  const margin = Math.max(12, Math.min(45, gamma))
-  const from = Math.max(1, Math.floor((members[0]!.frequencyHz - margin) / step))
-  const to = Math.min(ring.size / 2 - 1, Math.ceil((members.at(-1)!.frequencyHz + margin) / step))
+  const margin = Math.max(12, Math.min(80, gamma))
+  const lowest = Math.min(...members.map(t => t.frequencyHz))
+  const highest = Math.max(...members.map(t => t.frequencyHz))
+  const from = Math.max(1, Math.floor((lowest - margin) / step))
+  const to = Math.min(ring.size / 2 - 1, Math.ceil((highest + margin) / step))
   const band = { from, count: to - from + 1, values: ring.spectrum.bins.slice(2 * from, 2 * to + 2) }
   const scratch = new Float64Array(2 * band.count)
   const centre = (from + to) / 2 * step
@@ -110,14 +114,34 @@ function localVariance(ring: RingSpectrum, band: BinBand, fit: ToneFit): number[
   })
 }
 
-/** Drops tones that did not hold up: lost in noise, at the fit's limits, or a faint ghost inside a stronger line's width. */
-export function prune(tones: FittedTone[], toHz: number): FittedTone[] {
-  const amplitude = (t: FittedTone) => Math.hypot(t.re, t.im)
-  const kept = tones.filter(t => amplitude(t) > 2 * t.amplitudeError && t.gammaPerS < 0.95 * MAX_GAMMA_PER_S && t.frequencyHz > 15 && t.frequencyHz < toHz)
-  return kept.filter(t => !kept.some((other) => {
-    if (other === t || amplitude(other) < amplitude(t)) return false
-    const apart = Math.abs(other.frequencyHz - t.frequencyHz)
-    const width = Math.max(other.gammaPerS, t.gammaPerS) / Math.PI
-    return apart < Math.max(0.25 * width, 0.3) || (apart < 1.5 * width && amplitude(t) < 0.2 * amplitude(other))
-  }))
+/** A tone must stand this far out of another's flank at its place: a room's tail ripples along the flank of its own line. */
+const OUT_OF_FLANK = 0.3
+
+/**
+ * Drops tones that did not hold up: lost in noise, at the fit's limits, or a ripple on the flank of a stronger one.
+ *
+ * Of each group of neighbours only the worst goes at a time: tones too many spoil each other's errors, and the right one
+ * among them stands again once the fit is repeated.
+ */
+export function dropWorst(tones: FittedTone[], toHz: number): FittedTone[] {
+  const worst = groupTones([...tones].sort((a, b) => a.frequencyHz - b.frequencyHz)).map((group) => {
+    const failing = group.filter(t => !holds(t, toHz) || tones.some(other => other !== t && isGhost(t, other)))
+    return failing.sort((a, b) => certainty(a) - certainty(b))[0]
+  })
+  return tones.filter(t => !worst.includes(t))
+}
+
+const certainty = (t: FittedTone) => Math.hypot(t.re, t.im) / (t.amplitudeError || 1e-300)
+
+function holds(t: FittedTone, toHz: number): boolean {
+  return certainty(t) > 2 && t.gammaPerS < 0.95 * MAX_GAMMA_PER_S && t.frequencyHz > 15 && t.frequencyHz < toHz
+}
+
+/** True where a tone is a ripple on another's flank, or the weaker of two that stand on the same place. */
+export function isGhost(tone: DecayingTone, other: DecayingTone): boolean {
+  const height = magnitudeAt(tone, tone.frequencyHz)
+  if (height > magnitudeAt(other, other.frequencyHz)) return false
+  const width = Math.min(other.gammaPerS, tone.gammaPerS) / Math.PI
+  const apart = Math.abs(other.frequencyHz - tone.frequencyHz)
+  return apart < Math.max(0.2 * width, 0.3) || height < OUT_OF_FLANK * magnitudeAt(other, tone.frequencyHz)
 }

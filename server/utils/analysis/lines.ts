@@ -1,6 +1,7 @@
 import { BLOCK_HZ, findCandidates } from './candidates'
-import { bandAround, prune, sweep, withErrors, type FittedTone, type RingSpectrum } from './clusters'
+import { bandAround, dropWorst, sweep, withErrors, type FittedTone, type RingSpectrum } from './clusters'
 import { subtractFromRing } from './decay'
+import { roomShare, withRoom } from './roomError'
 import { spectrumOf } from './spectrum'
 import { splitGroups } from './split'
 import { fitTones } from './toneFit'
@@ -51,6 +52,7 @@ const HIGHEST_HZ = 4000
 const ROUNDS = 4
 const MOST_A_ROUND = 24
 const MOST_LINES = 48
+const MOST_PASSES = 4
 /** A drum's line that took longer than this to fall by 60 dB would need a head without air, s. */
 const STEADY_T60_S = 20
 
@@ -73,12 +75,24 @@ export function findLines(ring: Ring): LineFindings {
   let found = findCandidates(ring.samples, search, [], MOST_A_ROUND)
   for (let round = 0; round < ROUNDS && found.candidates.length > 0 && tones.length < MOST_LINES; round++) {
     for (const candidate of found.candidates) tones.push(startTone(grid, candidate, tones))
-    tones = prune(sweep(grid, sweep(grid, tones, 3), 4), toHz)
+    tones = settle(grid, tones, toHz)
     if (round === 0) tones = splitGroups(grid, tones, noisePerBin)
     found = findCandidates(ring.samples, search, tones, Math.min(MOST_A_ROUND, MOST_LINES - tones.length))
   }
-  tones = prune(sweep(grid, splitGroups(grid, tones, noisePerBin), 8), toHz)
-  return describe(ring, tones, found.threshold, toHz)
+  tones = settle(grid, splitGroups(grid, tones, noisePerBin), toHz, 8)
+  const share = roomShare(grid, tones, noisePerBin)
+  return describe(ring, tones.map(t => withRoom(t, share)), found.threshold, toHz)
+}
+
+/** Fits and drops in turn until what is left holds up. */
+function settle(grid: RingSpectrum, tones: FittedTone[], toHz: number, iterations = 3): FittedTone[] {
+  let fitted = sweep(grid, sweep(grid, tones, iterations), iterations)
+  for (let pass = 0; pass < MOST_PASSES; pass++) {
+    const kept = dropWorst(fitted, toHz)
+    if (kept.length === fitted.length) break
+    fitted = sweep(grid, kept, iterations)
+  }
+  return fitted
 }
 
 function startTone(grid: RingSpectrum, start: { frequencyHz: number, gammaPerS: number }, others: FittedTone[]): FittedTone {

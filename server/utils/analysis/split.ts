@@ -1,6 +1,7 @@
-import { bandAround, groupTones, withErrors, type FittedTone, type RingSpectrum } from './clusters'
+import { bandAround, groupTones, isGhost, withErrors, type FittedTone, type RingSpectrum } from './clusters'
 import { exponentialSpectrum, type BinBand, type DecayingTone } from './decay'
-import { fitTones, type ToneFit } from './toneFit'
+import { roomShare } from './roomError'
+import { fitTones, MAX_GAMMA_PER_S, type ToneFit } from './toneFit'
 
 /** One more tone must leave less than this share of the residual: a room's tail, which is no line, gains less. */
 const SPLIT_GAIN = 0.35
@@ -18,11 +19,15 @@ const ABOVE_NOISE = 3
  * @param noisePerBin  expected |X|^2 of the noise alone, 0 where unknown
  */
 export function splitGroups(ring: RingSpectrum, tones: FittedTone[], noisePerBin: number): FittedTone[] {
+  // What the room ripples on every line is not another tone.
+  const worth = Math.max(WORTH_EXPLAINING, roomShare(ring, tones, noisePerBin) ** 2)
   let all = [...tones].sort((a, b) => a.frequencyHz - b.frequencyHz)
   for (const group of groupTones(all)) {
     if (group.every(t => t.gammaPerS < 0.5)) continue
     let members = group
-    for (let grown = grow(ring, members, all, noisePerBin); grown; grown = members.length < MOST_TOGETHER ? grow(ring, members, all, noisePerBin) : undefined) {
+    while (members.length < MOST_TOGETHER) {
+      const grown = grow(ring, members, all, { noisePerBin, worth })
+      if (!grown) break
       const old = members
       all = [...all.filter(t => !old.includes(t)), ...grown].sort((a, b) => a.frequencyHz - b.frequencyHz)
       members = grown
@@ -31,13 +36,15 @@ export function splitGroups(ring: RingSpectrum, tones: FittedTone[], noisePerBin
   return all
 }
 
-function grow(ring: RingSpectrum, members: FittedTone[], all: FittedTone[], noisePerBin: number): FittedTone[] | undefined {
+function grow(ring: RingSpectrum, members: FittedTone[], all: FittedTone[], limits: { noisePerBin: number, worth: number }): FittedTone[] | undefined {
   const band = bandAround(ring, members, all)
   const base = fitTones(ring, band, members, 4)
-  if (base.residual < Math.max(WORTH_EXPLAINING * base.total, ABOVE_NOISE * noisePerBin * band.count)) return undefined
+  if (base.residual < Math.max(limits.worth * base.total, ABOVE_NOISE * limits.noisePerBin * band.count)) return undefined
   let best: ToneFit | undefined
   for (const starts of startsFor(ring, band, base.tones)) {
-    const fit = fitTones(ring, band, starts, 8)
+    let fit = fitTones(ring, band, starts, 3)
+    if (fit.residual > 0.9 * base.residual) continue
+    fit = fitTones(ring, band, fit.tones, 5)
     if (!best || fit.residual < best.residual) best = fit
   }
   if (!best || best.residual > SPLIT_GAIN * base.residual) return undefined
@@ -49,12 +56,11 @@ type Start = { frequencyHz: number, gammaPerS: number }
 
 function startsFor(ring: RingSpectrum, band: BinBand, tones: DecayingTone[]): Start[][] {
   const gamma = tones.map(t => t.gammaPerS).sort((a, b) => a - b)[tones.length >> 1]!
+  const strongest = tones.reduce((a, b) => (Math.hypot(b.re, b.im) > Math.hypot(a.re, a.im) ? b : a))
   const starts: Start[][] = [[...tones, { frequencyHz: loudestLeft(ring, band, tones), gammaPerS: gamma }]]
-  for (const tone of tones) {
-    const others = tones.filter(t => t !== tone)
-    for (const apart of SPLIT_STARTS_HZ) {
-      starts.push([...others, ...[-1, 1].map(side => ({ frequencyHz: tone.frequencyHz + side * apart, gammaPerS: 0.8 * tone.gammaPerS }))])
-    }
+  const others = tones.filter(t => t !== strongest)
+  for (const apart of SPLIT_STARTS_HZ) {
+    starts.push([...others, ...[-1, 1].map(side => ({ frequencyHz: strongest.frequencyHz + side * apart, gammaPerS: 0.8 * strongest.gammaPerS }))])
   }
   return starts
 }
@@ -76,15 +82,14 @@ function loudestLeft(ring: RingSpectrum, band: BinBand, tones: DecayingTone[]): 
   return (band.from + best) * ring.spectrum.stepHz
 }
 
-/** Every tone inside the band, and of any two that overlap neither a ghost of the other nor its cancelling twin. */
+/** Every tone inside the band, none a ghost of another, and of two that overlap neither a cancelling twin of the other. */
 function plausible(tones: DecayingTone[], band: BinBand, ring: RingSpectrum): boolean {
   const [lo, hi] = [band.from * ring.spectrum.stepHz, (band.from + band.count) * ring.spectrum.stepHz]
-  return tones.every((a, i) => a.frequencyHz > lo && a.frequencyHz < hi && tones.slice(i + 1).every((b) => {
+  return tones.every((a, i) => a.frequencyHz > lo && a.frequencyHz < hi && a.gammaPerS < 0.95 * MAX_GAMMA_PER_S && tones.every((b, j) => {
+    if (i === j) return true
     const apart = Math.abs(a.frequencyHz - b.frequencyHz)
-    const width = Math.max(a.gammaPerS, b.gammaPerS) / Math.PI
-    if (apart > 1.5 * width) return true
-    const levels = Math.hypot(a.re, a.im) / Math.hypot(b.re, b.im)
     const decays = (a.gammaPerS + 0.1) / (b.gammaPerS + 0.1)
-    return apart > 0.2 * width && Math.min(levels, 1 / levels) > 0.16 && Math.max(decays, 1 / decays) < 3
+    const overlap = apart < Math.min(a.gammaPerS, b.gammaPerS) / Math.PI
+    return !isGhost(a, b) && (!overlap || Math.max(decays, 1 / decays) < 3)
   }))
 }
