@@ -29,7 +29,8 @@ const stateSchema = z.object({
 })
 export type State = z.infer<typeof stateSchema>
 
-const MAIL_FROM = 'Tarn & Alder Percussion <workshop@rimwright.test>'
+// Without a display name: the lines of local.env must be readable by a shell too.
+const MAIL_FROM = 'workshop@rimwright.test'
 
 /** @throws Error in words for the person who started the command */
 export function readChoices(env: NodeJS.ProcessEnv, root: string, cwd = process.cwd()): Choices {

@@ -50,8 +50,7 @@ export function run(command, args, { cwd = root, env = process.env, stdio = ['ig
 function endGroup(child, signal) {
   try {
     if (child.pid) process.kill(-child.pid, signal)
-  }
-  catch {
+  } catch {
     // The group has ended already.
   }
 }
@@ -101,8 +100,7 @@ export async function ensurePackages(names) {
   try {
     await privileged(...apt, 'update')
     await privileged(...apt, 'install', '--no-install-recommends', ...missing)
-  }
-  finally {
+  } finally {
     if (quietCluster) await privileged('rm', '-f', NO_MAIN_CLUSTER)
   }
   const still = names.filter(name => !PROBES[name]())
@@ -127,4 +125,11 @@ function installedMatchesLock() {
   // Optional packages for other systems are in the lock and rightly not installed.
   return Object.entries(wanted).every(([path, { version, optional, devOptional }]) =>
     path === '' || optional || devOptional || installed[path]?.version === version)
+}
+
+const OWN_SETTINGS = /^(PORT|HOST|NITRO_.*|NUXT_.*|DATABASE_URL|DATA_DIR|DEMO|PUBLIC_URL|STRIPE_.*|SMTP_URL|MAIL_.*|SESSION_PASSWORD|NODE_ENV|NODE_OPTIONS|VITEST.*|PG[A-Z]+)$/
+
+/** The environment without settings of an installation: tests must never reach a database or service that it names. */
+export function cleanEnv(env = process.env) {
+  return Object.fromEntries(Object.entries(env).filter(([name]) => !OWN_SETTINGS.test(name)))
 }

@@ -4,14 +4,10 @@ import { type DB, type Transaction, useDb } from '../core/db'
 import { DomainError } from '../core/errors'
 import { enqueue } from '../core/jobs'
 import { recordAudit } from './audit'
+import { hashArgon2id } from './passwords'
 import { revokeSessions } from './session'
 import { spendToken } from './tokens'
 import { attemptLimiter } from './attempts'
-
-/** argon2id with OWASP's minimum for servers (19 MiB, 2 passes, 1 lane). */
-const HASHING = { type: argon2.argon2id, memoryCost: 19_456, timeCost: 2, parallelism: 1 } as const
-
-export const hashArgon2id = (password: string) => argon2.hash(password, HASHING)
 
 /** Checked when the address is unknown, so that the answer takes as long as for a known one. */
 let decoy: Promise<string> | undefined
