@@ -5,6 +5,9 @@ type Json<T> = ColumnType<T, string, string>
 
 export type OrderStatus = 'awaiting-payment' | 'paid' | 'in-making' | 'tuned' | 'shipped' | 'delivered' | 'cancelled' | 'refunded'
 
+export type PaymentStatus = 'pending' | 'succeeded' | 'failed'
+export type RefundStatus = 'pending' | 'succeeded' | 'failed'
+
 export interface PriceListsTable {
   id: Generated<string>
   valid_from: Date
@@ -21,6 +24,9 @@ export interface HeadSpecsTable {
   instrument_id: string | null
   diameter_mm: number
   film_id: string
+  /** Drum and film as they stood when this was computed, so that it can be computed again. */
+  drum: Json<unknown> | null
+  film: Json<unknown> | null
   target: Json<unknown>
   note: string | null
   reachable: boolean
@@ -47,6 +53,10 @@ export interface OrdersTable {
   checkout_session_id: string | null
   checkout_url: string | null
   due_on: Date | null
+  /** Something that a person must look at: a wrong amount, a dispute, a refund that failed. */
+  attention: string | null
+  /** Set while the customer's bank disputes the payment. */
+  disputed_at: Date | null
   created_at: CreatedAt
   updated_at: Generated<Date>
 }
@@ -77,7 +87,7 @@ export interface PaymentsTable {
   provider_ref: string
   amount_minor: number
   currency: string
-  status: 'succeeded' | 'failed' | 'pending'
+  status: PaymentStatus
   created_at: CreatedAt
 }
 
@@ -89,7 +99,7 @@ export interface RefundsTable {
   amount_minor: number
   currency: string
   reason: string
-  status: 'pending' | 'succeeded' | 'failed'
+  status: RefundStatus
   by_user: string | null
   created_at: CreatedAt
 }

@@ -206,6 +206,8 @@ export async function up(db: Kysely<any>): Promise<void> {
       instrument_id uuid references instruments on delete set null,
       diameter_mm double precision not null check (diameter_mm > 0),
       film_id text not null references films,
+      drum jsonb,
+      film jsonb,
       target jsonb not null,
       note text,
       reachable boolean not null,
@@ -216,6 +218,7 @@ export async function up(db: Kysely<any>): Promise<void> {
       created_at timestamptz not null default now(),
       check (reachable = (price is not null))
     );
+    create index head_specs_customer on head_specs (customer_id, created_at desc);
     create sequence order_number start 1001;
     create table orders (
       id uuid primary key default gen_random_uuid(),
@@ -230,17 +233,21 @@ export async function up(db: Kysely<any>): Promise<void> {
       checkout_session_id text unique,
       checkout_url text,
       due_on date,
+      attention text,
+      disputed_at timestamptz,
       created_at timestamptz not null default now(),
       updated_at timestamptz not null default now()
     );
-    create index orders_customer on orders (customer_id, created_at desc);
-    create index orders_status on orders (status, created_at);
+    create index orders_newest on orders (created_at desc, id desc);
+    create index orders_customer on orders (customer_id, created_at desc, id desc);
+    create index orders_status on orders (status, created_at desc, id desc);
     create table order_heads (
       order_id uuid not null references orders on delete cascade,
       head_spec_id uuid not null references head_specs,
       position int not null,
       primary key (order_id, position)
     );
+    create index order_heads_spec on order_heads (head_spec_id);
     create table order_history (
       id bigint generated always as identity primary key,
       order_id uuid not null references orders on delete cascade,
@@ -274,6 +281,7 @@ export async function up(db: Kysely<any>): Promise<void> {
       by_user uuid references users,
       created_at timestamptz not null default now()
     );
+    create index refunds_order on refunds (order_id);
     create table webhook_events (
       id text primary key,
       type text not null,

@@ -4,12 +4,23 @@ import type { DB, Transaction } from './db'
 import { getConfig } from './config'
 import { log } from './log'
 import { deliverMail } from '../mail/deliver'
+import { sendRefund } from '../payments/sendRefund'
+import { settleOverdueCheckouts } from '../payments/sweep'
 
 /** Queues and what a job of each carries: ids only, never secrets; the worker reads the rest when it runs. */
 export interface Jobs {
   mail: { kind: MailKind, id: string }
+  refund: { id: string }
+  'sweep-checkouts': Record<string, never>
 }
 export type MailKind = 'confirm-email' | 'reset-password' | 'invitation' | 'order-receipt'
+
+const workers: { [Name in keyof Jobs]: (data: Jobs[Name]) => Promise<void> } = {
+  'mail': deliverMail,
+  'refund': ({ id }) => sendRefund(id),
+  'sweep-checkouts': () => settleOverdueCheckouts(),
+}
+const queues = Object.keys(workers) as (keyof Jobs)[]
 
 let boss: PgBoss | undefined
 let ready: Promise<PgBoss> | undefined
@@ -19,10 +30,13 @@ export function startJobs(): Promise<PgBoss> {
     boss = new PgBoss({ connectionString: getConfig().databaseUrl, schema: 'pgboss', max: 3 })
     boss.on('error', error => log.error({ err: error }, 'job queue'))
     await boss.start()
-    await boss.createQueue('mail')
-    await boss.work<Jobs['mail']>('mail', { pollingIntervalSeconds: 0.5, batchSize: 1 }, async ([job]) => {
-      if (job) await deliverMail(job.data)
-    })
+    for (const name of queues) {
+      await boss.createQueue(name)
+      await boss.work<Jobs[typeof name]>(name, { pollingIntervalSeconds: 0.5, batchSize: 1 }, async ([job]) => {
+        if (job) await workers[name](job.data as never)
+      })
+    }
+    await boss.schedule('sweep-checkouts', '*/15 * * * *', {})
     return boss
   })()
 }

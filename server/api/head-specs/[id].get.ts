@@ -1,0 +1,3 @@
+import { idParams } from '#shared/schemas/common'
+
+export default defineRoute({ access: 'signed-in', params: idParams, handler: ({ user, params }) => getHeadSpec(useDb(), user, params.id) })
