@@ -5,8 +5,8 @@ import { tubeImpedance } from './tubeImpedance'
 
 /** Cross modes kept per m; the rest add less than 1e-5 of the mass. */
 const CROSS_MODES = 24
-/** Loss factor of a followed resonance: walls, leaks, and above all the head's own losses are far larger than in a hard tube. */
-const AIR_LOSS_FACTOR = 0.03
+/** Loss factor of a followed resonance: walls and leaks of a hard tube. */
+const AIR_LOSS_FACTOR = 0.01
 /** Loss factor for resonances that are not followed one by one; wide enough for the table's grid. */
 const BLUNT_LOSS_FACTOR = 0.1
 /** Resonances whose static mass on every shape is below this, in units of rho0 R, split a head's mode by less than its width. */
@@ -87,12 +87,11 @@ export function tubeAir(m: number, lambda: number, closed: boolean): TubeAir {
   }
 }
 
-function addOuter(table: AirTable, row: number, overlap: Float64Array, value: { mass: number, loss: number }): void {
+function addOuter(table: AirTable, row: number, overlap: Float64Array, mass: number): void {
   for (let n = 0, at = row * table.width; n < overlap.length; n++) {
     for (let k = 0; k <= n; k++, at++) {
       const product = overlap[n]! * overlap[k]!
-      table.mass[at] = table.mass[at]! + product * value.mass
-      table.loss[at] = table.loss[at]! + product * value.loss
+      table.mass[at] = table.mass[at]! + product * mass
     }
   }
 }

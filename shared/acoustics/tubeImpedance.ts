@@ -36,10 +36,8 @@ export interface TubeImpedanceOptions {
   taken: ReadonlyArray<{ kappa: number, weight: number, otherSign: 1 | -1 }>
 }
 
-export interface TubeImpedance {
-  own: { mass: number, loss: number }
-  cross: { mass: number, loss: number }
-}
+/** Real parts only: the loss factor is there to keep resonances finite, not to say how much the air takes away. */
+export interface TubeImpedance { own: number, cross: number }
 
 /**
  * Mass that one cross mode of a tube puts on a piston of its own shape, by rho0 R, and on the one at the far end.
@@ -72,5 +70,5 @@ export function tubeImpedance(options: TubeImpedanceOptions): TubeImpedance {
     cross.re -= resonance.otherSign * term.re
     cross.im -= resonance.otherSign * term.im
   }
-  return { own: { mass: own.re, loss: Math.max(0, -own.im) }, cross: { mass: cross.re, loss: -cross.im } }
+  return { own: own.re, cross: cross.re }
 }

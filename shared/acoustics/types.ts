@@ -76,8 +76,10 @@ export interface PredictedMode {
   n: number
   /** The head that moves most. */
   head: 'struck' | 'other'
-  /** Undamped frequency with air, bending and edge, Hz. */
+  /** Undamped frequency sqrt(omega_d^2 + gamma^2) / (2 pi) with air, bending and edge, Hz; radiation moves it a little. */
   frequencyHz: number
+  /** The same if the air took no energy away, Hz. */
+  losslessHz: number
   /** Frequency of the same mode without air, bending or edge, Hz. */
   idealHz: number
   /** The air's mass per area, as the mode feels it (negative where the air acts as a spring), kg/m2. */

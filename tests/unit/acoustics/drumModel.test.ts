@@ -40,7 +40,7 @@ describe('modes with air', () => {
         // Source: scipy, roots of det(K - omega^2 M(omega)) by a scan in omega (tests/reference/acoustics.py).
         const heads = modes.filter(mode => mode.m === Number(m) && mode.frequencyHz < (construction === 'kettle' ? 410 : 580))
         for (const mode of heads) {
-          const nearest = Math.min(...roots.map(root => Math.abs(root / mode.frequencyHz - 1)))
+          const nearest = Math.min(...roots.map(root => Math.abs(root / mode.losslessHz - 1)))
           expect(nearest).toBeLessThan(2e-3) // the reference's air has no losses; ours blunts the weak resonances
         }
         expect(heads.length).toBeGreaterThan(0)
@@ -86,8 +86,8 @@ describe('modes with air', () => {
     const model = createDrumModel({ geometry: geometries[4]!, film, air })
     const one = model.predictModes({ tensionNPerM: 2000, otherTensionNPerM: 2700, maxHz: 700 })
     const two = model.predictModes({ tensionNPerM: 2700, otherTensionNPerM: 2000, maxHz: 700 })
-    expect(two.map(mode => mode.frequencyHz.toFixed(6))).toEqual(one.map(mode => mode.frequencyHz.toFixed(6)))
-    expect(find(two, 2, 1, 'other').frequencyHz).toBeCloseTo(find(one, 2, 1).frequencyHz, 6) // the same root: iteration's rounding
+    expect(two.map(mode => mode.losslessHz.toFixed(6))).toEqual(one.map(mode => mode.losslessHz.toFixed(6)))
+    expect(find(two, 2, 1, 'XX // the same root: iteration's rounding
   })
 
   it('of two heads split the (0,1) into both moving together, low, and against each other, high', () => {
@@ -114,7 +114,7 @@ describe('modes with air', () => {
       const base = at(2400, 2900, 1, 0.5)
       const e = 1e-4
       const slope = (up: PredictedMode[], down: PredictedMode[], mode: PredictedMode) =>
-        Math.log(find(up, mode.m, mode.n, mode.head).frequencyHz / find(down, mode.m, mode.n, mode.head).frequencyHz) / (2 * e)
+        Math.log(find(up, mode.m, mode.n, mode.head).losslessHz / find(down, mode.m, mode.n, mode.head).losslessHz) / (2 * e)
       const t = [at(2400 * Math.exp(e), 2900, 1, 0.5), at(2400 * Math.exp(-e), 2900, 1, 0.5)] as const
       const o = [at(2400, 2900 * Math.exp(e), 1, 0.5), at(2400, 2900 * Math.exp(-e), 1, 0.5)] as const
       const s = [at(2400, 2900, Math.exp(e), 0.5), at(2400, 2900, Math.exp(-e), 0.5)] as const
