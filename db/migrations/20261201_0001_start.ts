@@ -167,7 +167,7 @@ export async function up(db: Kysely<any>): Promise<void> {
     -- The history table walks these: a sort column and the id, forwards or backwards. A reading without evenness sorts last both ways.
     alter table readings set (toast_tuple_target = 128);
     create index readings_taken on readings (taken_at, id);
-    create index readings_instrument on readings (instrument_id, taken_at, id);
+    create index readings_instrument on readings (instrument_id, taken_at, id) include (tension_n_per_m, fundamental_hz);
     create index readings_head on readings (head_id, taken_at);
     create index readings_tension on readings (tension_n_per_m, id);
     create index readings_fundamental on readings (fundamental_hz, id);

@@ -62,8 +62,7 @@ export interface SoundView {
 }
 
 export interface RecordingView {
-  /** Null where the file could not be read and nothing was stored. */
-  id: string | null
+  id: string
   headId: string
   instrumentId: string
   strike: z.infer<typeof strikeSchema>
@@ -75,7 +74,7 @@ export interface RecordingView {
   privateToMaker: boolean
   recordedAt: string
   byteCount: number
-  sound: SoundView | null
+  sound: SoundView
   refusal: { code: RefusalCode, message: string } | null
 }
 
@@ -119,8 +118,11 @@ export interface ReadingView {
   instrument: { id: string, code: string, name: string, construction: string, diameterMm: number, rodCount: number }
 }
 
+/** A file that could not be read at all: nothing of it was stored. */
+export interface UnreadRecordingView { id: null, headId: string, instrumentId: string, refusal: { code: RefusalCode, message: string } }
+
 /** The answer to an uploaded recording: 201 with a reading, 422 with a refusal and no reading. */
-export interface RecordingAnswer { recording: RecordingView, reading: ReadingView | null }
+export interface RecordingAnswer { recording: RecordingView | UnreadRecordingView, reading: ReadingView | null }
 
 /** One row of the instrument history table. */
 export interface ReadingRowView {
@@ -130,6 +132,7 @@ export interface ReadingRowView {
   instrumentCode: string
   instrumentName: string
   construction: string
+  ownerId: string | null
   ownerName: string | null
   headId: string
   side: 'batter' | 'resonant'
@@ -143,4 +146,12 @@ export interface ReadingRowView {
   makerName: string | null
 }
 
-export interface ReadingsPage { items: ReadingRowView[], total: number, next: string | null }
+/** `total` where counting is quick, else `approximateTotal`. `position`: place of the first item in the whole list, from 1; 0 when empty. */
+export interface ReadingsPage {
+  items: ReadingRowView[]
+  total?: number
+  approximateTotal?: number
+  position: number
+  next: string | null
+  previous: string | null
+}
