@@ -7,8 +7,8 @@ const pitchHz = z.number('Pitch is a number in Hz.').min(20, 'Pitch is at least 
 const tensionNPerM = z.number('Tension is a number in N/m.').min(50, 'Tension is at least 50 N/m.').max(20_000, 'Tension is at most 20 000 N/m.')
 
 export const turnTargetSchema = z.discriminatedUnion('kind', [
-  /** `of`: the head's (0,1), or for a kettle its principal tone (1,1), which is what a player tunes by. */
-  z.object({ kind: z.literal('pitch'), hz: pitchHz, of: z.enum(['fundamental', 'principal']).default('fundamental') }),
+  /** `of`: the head's (0,1), which is meant where it is left out, or for a kettle its principal tone (1,1), which is what a player tunes by. */
+  z.object({ kind: z.literal('pitch'), hz: pitchHz, of: z.enum(['fundamental', 'principal']).optional() }),
   z.object({ kind: z.literal('tension'), nPerM: tensionNPerM }),
   z.object({ kind: z.literal('reading'), readingId: idSchema }),
   z.object({ kind: z.literal('even') }),

@@ -4,6 +4,7 @@ import type { z } from 'zod'
 import type { Role, SignedInUser } from '../../../shared/types/roles'
 import { DomainError, errorStatus, type FieldIssue } from './errors'
 import { log } from './log'
+import { parseInput } from './parse'
 import { requireUser } from '../people/session'
 
 /*
@@ -30,9 +31,9 @@ export function defineRoute<const A extends Access, P = undefined, Q = undefined
     try {
       refuseForeignOrigin(event)
       const user = options.access === 'public' ? null : await requireUser(event, options.access)
-      const params = options.params ? parse(options.params, getRouterParams(event, { decode: true })) : undefined
-      const query = options.query ? parse(options.query, getQuery(event)) : undefined
-      const body = options.body ? parse(options.body, await readJson(event)) : undefined
+      const params = options.params ? parseInput(options.params, getRouterParams(event, { decode: true })) : undefined
+      const query = options.query ? parseInput(options.query, getQuery(event)) : undefined
+      const body = options.body ? parseInput(options.body, await readJson(event)) : undefined
       const answer = await options.handler({ event, user: user as never, params: params as P, query: query as Q, body: body as B })
       if (options.status && getResponseStatus(event) === 200) setResponseStatus(event, options.status)
       return answer
@@ -40,14 +41,6 @@ export function defineRoute<const A extends Access, P = undefined, Q = undefined
       return answerError(event, error)
     }
   })
-}
-
-function parse<T>(schema: z.ZodType<T>, input: unknown): T {
-  const result = schema.safeParse(input)
-  if (result.success) return result.data
-  const issues: FieldIssue[] = result.error.issues.map(issue => ({ path: issue.path.join('.'), message: issue.message }))
-  const first = issues[0]!
-  throw new DomainError('bad-input', issues.length === 1 ? first.message : `${first.message} (${issues.length} entries need attention.)`, issues)
 }
 
 async function readJson(event: H3Event): Promise<unknown> {

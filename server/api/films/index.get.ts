@@ -1,0 +1,1 @@
+export default defineRoute({ access: 'public', handler: () => listFilms(useDb()) })

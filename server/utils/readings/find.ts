@@ -1,0 +1,42 @@
+import type { ReadingView } from '../../../shared/schemas/reading'
+import type { SignedInUser } from '../../../shared/types/roles'
+import type { ReadingRow, RecordingRow } from '../../../db/readings.table'
+import { visibleTo } from '../instruments/access'
+import type { DB, Kysely } from '../core/db'
+import { DomainError, notFound } from '../core/errors'
+import { getHeadContext } from './headContext'
+import { mayHear, toReadingView } from './views'
+
+type Viewer = Pick<SignedInUser, 'id' | 'role'>
+
+/** @throws DomainError not-found, also for what belongs to someone else */
+export async function getReadingRow(db: Kysely<DB>, id: string, user: Viewer): Promise<ReadingRow> {
+  const row = await db.selectFrom('readings').innerJoin('instruments', 'instruments.id', 'readings.instrument_id')
+    .selectAll('readings').where('readings.id', '=', id).where(visibleTo(user)).executeTakeFirst()
+  if (!row) throw notFound('This reading')
+  return row
+}
+
+/** @throws DomainError not-found, also for what belongs to someone else */
+export async function getReading(db: Kysely<DB>, id: string, user: Viewer): Promise<ReadingView> {
+  const reading = await getReadingRow(db, id, user)
+  const { instrument, head } = await getHeadContext(db, reading.head_id, user)
+  const recording = await getRecordingRow(db, reading.recording_id, user)
+  const maker = reading.taken_by ? await db.selectFrom('users').select('name').where('id', '=', reading.taken_by).executeTakeFirst() : undefined
+  return toReadingView({ reading, recording, head, instrument, makerName: maker?.name ?? null }, user)
+}
+
+/** @throws DomainError not-found, also for what belongs to someone else */
+export async function getRecordingRow(db: Kysely<DB>, id: string, user: Viewer): Promise<RecordingRow> {
+  const row = await db.selectFrom('recordings').innerJoin('instruments', 'instruments.id', 'recordings.instrument_id')
+    .selectAll('recordings').where('recordings.id', '=', id).where(visibleTo(user)).executeTakeFirst()
+  if (!row) throw notFound('This recording')
+  return row
+}
+
+/** A recording that this person may play. @throws DomainError not-found, not-allowed */
+export async function getAudibleRecording(db: Kysely<DB>, id: string, user: Viewer): Promise<RecordingRow> {
+  const row = await getRecordingRow(db, id, user)
+  if (!mayHear(user, row)) throw new DomainError('not-allowed', 'This recording is private to the maker. Ask the maker if you need to hear it.')
+  return row
+}
