@@ -47,7 +47,6 @@ export function tapTruth(drum: SimDrum, strike: SimStrike, lines: Line[], onsetS
   const turned = strike.side === 'resonant'
   const loudest = Math.max(...lines.map(line => line.loudness))
   const modes = lines
-    .filter(line => line.mode.leading.root.n > 0)
     .map(line => ({
       m: line.mode.leading.root.m,
       n: line.mode.leading.root.n,

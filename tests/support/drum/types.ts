@@ -69,6 +69,7 @@ export interface SimTap { drum: SimDrum, strike: SimStrike, microphone: SimMicro
 
 export interface SimMode {
   m: number
+  /** 0 for a resonance of the shell's air that carries the film along. */
   n: number
   head: 'batter' | 'resonant'
   hz: number
