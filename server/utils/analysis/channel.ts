@@ -30,7 +30,8 @@ export function chooseChannel(sound: DecodedSound): MonoSound {
     return finish(mean, sound.sampleRateHz, peak)
   }
   const audible = 0.03 // a channel 30 dB below the other is a bleed, not a choice
-  const preferLeft = a.atRail >= 3 !== b.atRail >= 3 && Math.min(a.power, b.power) > audible ** 2 * Math.max(a.power, b.power)
+  const oneClips = (a.atRail >= 3) !== (b.atRail >= 3)
+  const preferLeft = oneClips && Math.min(a.power, b.power) > audible ** 2 * Math.max(a.power, b.power)
     ? a.atRail < b.atRail
     : a.power >= b.power
   return finish(preferLeft ? left : right, sound.sampleRateHz, peak)

@@ -117,6 +117,6 @@ export interface SoundFacts {
   spectrum: null | { fromHz: number, stepHz: number, levelDb: number[] }
 }
 
-export type AnalysisOutcome =
-  | { kind: 'read', sound: SoundFacts, reading: AnalysedReading, timingsMs: Record<string, number> }
-  | { kind: 'refused', sound: SoundFacts | null, refusal: Refusal, timingsMs: Record<string, number> }
+export type AnalysisOutcome
+  = | { kind: 'read', sound: SoundFacts, reading: AnalysedReading, timingsMs: Record<string, number> }
+    | { kind: 'refused', sound: SoundFacts | null, refusal: Refusal, timingsMs: Record<string, number> }

@@ -1,0 +1,25 @@
+import workerUrl from '../../workers/analysis?node-worker'
+import { createAnalysisPool, type AnalysisPool } from './pool'
+import type { AnalysisOutcome, AnalysisRequest } from './types'
+
+let pool: AnalysisPool | undefined
+
+/** Starts the analysis threads; called at start-up so that the first upload finds one warm. */
+export function startAnalysis(): AnalysisPool {
+  // The worker's address is known only once the server runs, so not at module load.
+  return pool ??= createAnalysisPool(workerUrl())
+}
+
+/**
+ * Reads a recording off the main thread.
+ * @throws AnalysisTimeoutError after a minute
+ */
+export function analyseInWorker(request: AnalysisRequest): Promise<AnalysisOutcome> {
+  return startAnalysis().analyse(request)
+}
+
+/** Ends the analysis threads; for the server's close hook. */
+export async function stopAnalysis() {
+  await pool?.close()
+  pool = undefined
+}
