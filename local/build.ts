@@ -74,7 +74,7 @@ async function waitForLock(root: string) {
 function build(root: string, started: (pid: number | undefined) => void): Promise<void> {
   return new Promise((resolve, reject) => {
     let text = ''
-    const keep = (chunk: Buffer) => text = (text + chunk.toString()).slice(-20_000)
+    const keep = (chunk: Buffer) => text = (text + chunk.toString()).slice(-200_000)
     const child = spawn(process.execPath, [join(root, 'node_modules/nuxt/bin/nuxt.mjs'), 'build'], {
       cwd: root,
       env: { ...process.env, NODE_ENV: 'production', NUXT_TELEMETRY_DISABLED: '1', CI: '1' },
@@ -88,7 +88,14 @@ function build(root: string, started: (pid: number | undefined) => void): Promis
     child.once('close', (code) => {
       started(undefined)
       if (code === 0) resolve()
-      else reject(new Error(`The build failed. Its output ends:\n${text.split('\n').slice(-40).join('\n')}`))
+      else reject(new Error(`The build failed:\n${errorLines(text)}`))
     })
   })
+}
+
+/** The bundler says what is wrong, then lists hundreds of files: what counts stands at the first error. */
+function errorLines(output: string): string {
+  const lines = output.trimEnd().split('\n')
+  const first = lines.findIndex(line => /error/i.test(line))
+  return first < 0 ? lines.slice(-30).join('\n') : lines.slice(first, first + 30).join('\n')
 }
