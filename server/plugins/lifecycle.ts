@@ -9,12 +9,14 @@ export default defineNitroPlugin((nitro) => {
   log.info({ publicUrl: config.publicUrl }, 'starting')
   startJobs().catch(error => log.error({ err: error }, 'job queue did not start'))
 
-  // What the browser is told of its session comes from the row, so a revoked session disappears there too.
+  // What the browser is told of its session comes from the row, so a revoked session disappears there too; `ended` lets the page say why.
   sessionHooks.hook('fetch', async (session, event) => {
     const user = await findUser(event)
     if (!user) {
       await clearUserSession(event)
-      throw createError({ statusCode: 401, statusMessage: 'Unauthorized', message: 'Your session has ended.' })
+      delete session.user
+      session.ended = true
+      return
     }
     session.user = user
   })

@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { emailSchema, nameSchema, passwordSchema, roleSchema } from './common'
+import { emailSchema, limitSchema, nameSchema, passwordSchema, roleSchema } from './common'
 
 export const signInBody = z.object({ email: emailSchema, password: z.string().min(1, 'Write your password.').max(200) })
 
@@ -16,3 +16,29 @@ export const invitationBody = z.object({ name: nameSchema, email: emailSchema, r
 
 export const userSchema = z.object({ id: z.string(), name: z.string(), email: z.string(), role: roleSchema })
 export type SignedInUser = z.infer<typeof userSchema>
+
+export const peopleQuery = z.object({
+  limit: limitSchema.default(50),
+  cursor: z.string().max(400).optional(),
+  q: z.string().trim().max(100).optional(),
+  role: roleSchema.optional(),
+  active: z.enum(['true', 'false']).transform(text => text === 'true').optional(),
+})
+export type PeopleQuery = z.infer<typeof peopleQuery>
+
+export const personPatchBody = z.object({ role: roleSchema.optional(), active: z.boolean().optional() })
+  .refine(patch => patch.role !== undefined || patch.active !== undefined, 'Say what to change: role or active.')
+export type PersonPatchBody = z.infer<typeof personPatchBody>
+
+export interface PersonView {
+  id: string
+  name: string
+  email: string
+  role: z.infer<typeof roleSchema>
+  /** invited: has not chosen a password yet; unconfirmed: has not opened the letter; closed: deactivated. */
+  state: 'active' | 'invited' | 'unconfirmed' | 'closed'
+  instruments: number
+  createdAt: string
+  lastSeenAt: string | null
+}
+export interface PeoplePage { items: PersonView[], total: number, next: string | null }

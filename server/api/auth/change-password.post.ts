@@ -5,7 +5,7 @@ export default defineRoute({
   access: 'signed-in',
   body: changePasswordBody,
   async handler({ event, user, body }) {
-    await changePassword(user, body.current, body.password)
+    await changePassword(user, body.current, body.password, requestPlace(event))
     await startSession(event, user)
     return { ok: true }
   },

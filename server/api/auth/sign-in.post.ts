@@ -4,7 +4,7 @@ export default defineRoute({
   access: 'public',
   body: signInBody,
   async handler({ event, body }) {
-    const user = await checkCredentials(body.email, body.password, getRequestIP(event) ?? 'unknown')
+    const user = await checkCredentials(body.email, body.password, requestPlace(event))
     await startSession(event, user)
     return { user }
   },

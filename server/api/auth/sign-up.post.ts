@@ -4,8 +4,8 @@ export default defineRoute({
   access: 'public',
   body: signUpBody,
   status: 201,
-  async handler({ body }) {
-    await signUp(body)
+  async handler({ event, body }) {
+    await signUp(body, requestPlace(event))
     return { ok: true }
   },
 })

@@ -8,7 +8,7 @@ import type { HistoryFilters } from './filters'
  */
 const EXACT_COUNT_COST = 6_000
 
-type Plan = [{ 'Plan': { 'Total Cost': number, 'Plan Rows': number } }]
+type Plan = [{ Plan: { 'Total Cost': number, 'Plan Rows': number } }]
 
 /** How many rows the filters leave: exact where that is quick, else about. */
 export async function countHistory(db: Kysely<DB>, filters: HistoryFilters): Promise<{ total: number } | { approximateTotal: number }> {

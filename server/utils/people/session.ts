@@ -12,7 +12,9 @@ import { useDb } from '../core/db'
 /** Last-seen is written at most this often, so that reading a page does not write a row each time. */
 const SEEN_EVERY_MS = 5 * 60_000
 
+/** Whatever session this browser had before ends with it. */
 export async function startSession(event: H3Event, user: SignedInUser): Promise<void> {
+  await revokeCurrent(event)
   const { id } = await useDb().insertInto('sessions')
     .values({ user_id: user.id, user_agent: getRequestHeader(event, 'user-agent')?.slice(0, 200) ?? null })
     .returning('id').executeTakeFirstOrThrow()
@@ -20,11 +22,13 @@ export async function startSession(event: H3Event, user: SignedInUser): Promise<
 }
 
 export async function endSession(event: H3Event): Promise<void> {
-  const session = await getUserSession(event)
-  if (session.secure?.sessionId) {
-    await useDb().updateTable('sessions').set({ revoked_at: new Date() }).where('id', '=', session.secure.sessionId).execute()
-  }
+  await revokeCurrent(event)
   await clearUserSession(event)
+}
+
+async function revokeCurrent(event: H3Event): Promise<void> {
+  const sessionId = (await getUserSession(event)).secure?.sessionId
+  if (sessionId) await useDb().updateTable('sessions').set({ revoked_at: new Date() }).where('id', '=', sessionId).where('revoked_at', 'is', null).execute()
 }
 
 export async function revokeSessions(userId: string, db = useDb()): Promise<void> {
