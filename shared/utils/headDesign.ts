@@ -23,7 +23,9 @@ export interface DesignDrum {
   otherFilm?: Omit<DesignFilm, 'id' | 'name'>
 }
 
-export type DesignTarget = { kind: 'pitch', hz: number } | { kind: 'tension', nPerM: number }
+/** The partial that a pitch names: (0,1), or on a kettle the principal tone (1,1). */
+export type DesignTone = 'fundamental' | 'principal'
+export type DesignTarget = { kind: 'pitch', hz: number, of: DesignTone } | { kind: 'tension', nPerM: number }
 
 export interface HeadPrediction {
   tensionNPerM: number
@@ -34,7 +36,7 @@ export interface HeadPrediction {
   modes: { m: number, n: number, hz: number }[]
 }
 
-/** Tension and pitch between which a film serves on a drum. */
+/** Tension and pitch, of the tone asked for, between which a film serves on a drum. */
 export interface DesignRange { lowestHz: number, highestHz: number, lowestNPerM: number, highestNPerM: number }
 
 /**
@@ -48,6 +50,7 @@ export const SLACK_SHARE_OF_YIELD = 0.01
 
 /** Modes are shown up to this multiple of the lowest: what a player hears as the drum's tone lies below. */
 const SHOWN_UP_TO = 4.2
+const SHOWN_AT_MOST = 12
 
 export function bareDiameterDrum(diameterMm: number): DesignDrum {
   return { construction: 'fixture', diameterMm, depthMm: 0, bowlVolumeL: null }
@@ -67,7 +70,7 @@ export interface HeadDesign {
 }
 
 /** A head on a drum in the workshop's air, 20 deg C at half humidity. The same figures in the browser and on the server. */
-export function createHeadDesign(drum: DesignDrum, designFilm: DesignFilm): HeadDesign {
+export function createHeadDesign(drum: DesignDrum, designFilm: DesignFilm, tone: DesignTone = 'fundamental'): HeadDesign {
   const film = toHeadFilm(designFilm)
   const model = createDrumModel({
     geometry: {
@@ -80,38 +83,43 @@ export function createHeadDesign(drum: DesignDrum, designFilm: DesignFilm): Head
   })
   const lowestNPerM = SLACK_SHARE_OF_YIELD * film.yieldPa * filmThicknessM(film)
   const highestNPerM = SAFE_SHARE_OF_YIELD * film.yieldPa * filmThicknessM(film)
+  const nodalDiameters = tone === 'principal' ? 1 : 0
+  const toneHz = (tensionNPerM: number) => lowestModeHz(model, tensionNPerM, nodalDiameters)
   let range: DesignRange | undefined
   return {
-    range: () => range ??= { lowestNPerM, highestNPerM, lowestHz: lowestModeHz(model, lowestNPerM), highestHz: lowestModeHz(model, highestNPerM) },
-    predict: target => predictAt(model, film, target.kind === 'tension' ? target.nPerM : tensionForPitch(model, target.hz, highestNPerM)),
+    range: () => range ??= { lowestNPerM, highestNPerM, lowestHz: toneHz(lowestNPerM), highestHz: toneHz(highestNPerM) },
+    predict: target => predictAt(model, film, target.kind === 'tension' ? target.nPerM : tensionForPitch(toneHz, target.hz, highestNPerM)),
   }
 }
 
 function predictAt(model: DrumModel, film: HeadFilm, tensionNPerM: number): HeadPrediction {
-  const fundamentalHz = lowestModeHz(model, tensionNPerM)
+  const fundamentalHz = lowestModeHz(model, tensionNPerM, 0)
   const { stressPa, shareOfYield } = filmStress(film, tensionNPerM)
   const seen = new Set<string>()
   const modes = model.predictModes({ tensionNPerM, maxHz: fundamentalHz * SHOWN_UP_TO })
     .map(mode => ({ m: mode.m, n: mode.n, hz: mode.frequencyHz }))
     // Two coupled heads show each shape twice; the lower one is the struck head's and its mate moving together.
     .filter(({ m, n }) => !seen.has(`${m},${n}`) && seen.add(`${m},${n}`))
+    .slice(0, SHOWN_AT_MOST)
   return { tensionNPerM, fundamentalHz, stressMPa: stressPa / 1e6, shareOfYield, modes }
 }
 
-/** The drum's lowest axisymmetric mode, Hz. With two heads both are taken at the same tension. */
-function lowestModeHz(model: DrumModel, tensionNPerM: number): number {
-  return model.predictModes({ tensionNPerM, nodalDiameters: [0] })[0]!.frequencyHz
+/** The drum's lowest mode with m nodal diameters, Hz. With two heads both are taken at the same tension. */
+function lowestModeHz(model: DrumModel, tensionNPerM: number, m: number): number {
+  return model.predictModes({ tensionNPerM, nodalDiameters: [m] })[0]!.frequencyHz
 }
 
 /**
- * Tension at which the lowest mode sounds at `hz`, N/m: secant steps on ln f over ln T, kept between bounds that close in.
+ * Tension at which the wanted tone sounds at `hz`, N/m: secant steps on ln f over ln T, kept between bounds that close in.
  * The slope is close to one half, so a few steps do.
- * @throws RangeError when the pitch lies outside what any tension from 1e-4 to 1e4 times the start gives
+ * @param startNPerM  the film's highest safe tension; a fifth of its slackest bounds the search below, because at still
+ *                    less the layer that bends over the edge is as wide as the head and the model means nothing
+ * @throws RangeError when the pitch lies outside what tensions from there to 1e3 times the start give
  */
-function tensionForPitch(model: DrumModel, hz: number, startNPerM: number): number {
-  let low = Math.log(startNPerM * 1e-4)
-  let high = Math.log(startNPerM * 1e4)
-  const miss = (lnTension: number) => Math.log(lowestModeHz(model, Math.exp(lnTension)) / hz)
+function tensionForPitch(toneHz: (tensionNPerM: number) => number, hz: number, startNPerM: number): number {
+  let low = Math.log(startNPerM * SLACK_SHARE_OF_YIELD / SAFE_SHARE_OF_YIELD / 5)
+  let high = Math.log(startNPerM * 1e3)
+  const miss = (lnTension: number) => Math.log(toneHz(Math.exp(lnTension)) / hz)
   if (!(hz > 0) || miss(low) > 0 || miss(high) < 0) throw new RangeError(`no tension sounds ${hz} Hz on this drum`)
   let at = Math.log(startNPerM)
   let missed = miss(at)

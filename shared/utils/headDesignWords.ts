@@ -33,11 +33,11 @@ const hzWords = (hz: number) => `${roundHz(hz)} Hz (${pitchWords(hz)})`
  * on this drum at a safe share of yield, and which film of the catalogue reaches what was wanted.
  */
 export function assessHead(drum: DesignDrum, film: DesignFilm, catalogue: readonly DesignFilm[], target: DesignTarget): AssessedHead {
-  const design = createHeadDesign(drum, film)
+  const tone = target.kind === 'pitch' ? target.of : 'fundamental'
+  const design = createHeadDesign(drum, film, tone)
   const range = design.range()
   const predicted = predictOrNearest(design, target)
-  const wanted = (of: HeadDesign) => target.kind === 'pitch' ? target.hz : of.predict(target).fundamentalHz
-  const wantedHz = wanted(design)
+  const wantedHz = target.kind === 'pitch' ? target.hz : predicted.fundamentalHz
   const tooHigh = target.kind === 'pitch' ? target.hz > range.highestHz : target.nPerM > range.highestNPerM
   const tooLow = target.kind === 'pitch' ? target.hz < range.lowestHz : target.nPerM < range.lowestNPerM
   if (!tooHigh && !tooLow) {
@@ -67,7 +67,7 @@ function findOtherFilm(drum: DesignDrum, film: DesignFilm, catalogue: readonly D
   let best: { film: DesignFilm, share: number } | undefined
   for (const candidate of catalogue) {
     if (candidate.id === film.id) continue
-    const design = createHeadDesign(drum, candidate)
+    const design = createHeadDesign(drum, candidate, target.kind === 'pitch' ? target.of : 'fundamental')
     const { lowestHz, highestHz, lowestNPerM, highestNPerM } = design.range()
     const fits = target.kind === 'pitch' ? target.hz >= lowestHz && target.hz <= highestHz : target.nPerM >= lowestNPerM && target.nPerM <= highestNPerM
     if (!fits) continue
