@@ -4,6 +4,8 @@ import { powerOf, ringWindow, spectrumOf } from './spectrum'
 export interface Candidate { frequencyHz: number, gammaPerS: number, power: number }
 
 export interface Search {
+  /** A peak on the flank of known lines must reach this share of their own amplitude there: the room's tail ripples below it. */
+  ripple: number
   sampleRateHz: number
   fromHz: number
   toHz: number
@@ -27,8 +29,6 @@ export const BLOCK_HZ = 40
 const ABOVE_NOISE = 10 ** 1.3
 /** Below the strongest line by more than this, a peak is quantisation, distortion or the filter's own leak. */
 const DYNAMIC_RANGE = 10 ** -5.8
-/** A peak on the flank of lines already fitted must reach this share of their own power there: the room's tail ripples below it. */
-const AGAINST_FLANK = 0.25
 /** Quantile of exponentially distributed noise power taken as its level, and what part of the mean that is: -ln(1 - q). */
 const NOISE_QUANTILE = 0.3
 const QUANTILE_OF_MEAN = -Math.log(1 - NOISE_QUANTILE)
@@ -62,7 +62,7 @@ function listen(ring: Float64Array, rest: Float64Array, search: Search, listenin
   const strongest = powerOf(whole).reduce((max, p) => Math.max(max, p), 0)
   const threshold = noiseLevel(power, left.stepHz, search).map(level => Math.max(ABOVE_NOISE * level, DYNAMIC_RANGE * strongest))
   const peaks = localPeaks(power, left.stepHz, search)
-    .filter(peak => peak.power > threshold[blockOf(peak.frequencyHz, search, threshold.length)]! && peak.power > AGAINST_FLANK * flank[peak.bin]!)
+    .filter(peak => peak.power > threshold[blockOf(peak.frequencyHz, search, threshold.length)]! && peak.power > search.ripple ** 2 * flank[peak.bin]!)
     .sort((a, b) => b.power - a.power)
   const later = laterPower(rest, rate, window, listening.laterS)
   const candidates: Candidate[] = []

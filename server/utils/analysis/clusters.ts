@@ -114,18 +114,16 @@ function localVariance(ring: RingSpectrum, band: BinBand, fit: ToneFit): number[
   })
 }
 
-/** A tone must stand this far out of another's flank at its place: a room's tail ripples along the flank of its own line. */
-const OUT_OF_FLANK = 0.3
-
 /**
  * Drops tones that did not hold up: lost in noise, at the fit's limits, or a ripple on the flank of a stronger one.
  *
  * Of each group of neighbours only the worst goes at a time: tones too many spoil each other's errors, and the right one
  * among them stands again once the fit is repeated.
+ * @param ripple  share of another's flank that a tone must exceed at its place
  */
-export function dropWorst(tones: FittedTone[], toHz: number): FittedTone[] {
+export function dropWorst(tones: FittedTone[], toHz: number, ripple: number): FittedTone[] {
   const worst = groupTones([...tones].sort((a, b) => a.frequencyHz - b.frequencyHz)).map((group) => {
-    const failing = group.filter(t => !holds(t, toHz) || tones.some(other => other !== t && isGhost(t, other)))
+    const failing = group.filter(t => !holds(t, toHz) || tones.some(other => other !== t && isGhost(t, other, ripple)))
     return failing.sort((a, b) => certainty(a) - certainty(b))[0]
   })
   return tones.filter(t => !worst.includes(t))
@@ -138,10 +136,10 @@ function holds(t: FittedTone, toHz: number): boolean {
 }
 
 /** True where a tone is a ripple on another's flank, or the weaker of two that stand on the same place. */
-export function isGhost(tone: DecayingTone, other: DecayingTone): boolean {
+export function isGhost(tone: DecayingTone, other: DecayingTone, ripple: number): boolean {
   const height = magnitudeAt(tone, tone.frequencyHz)
   if (height > magnitudeAt(other, other.frequencyHz)) return false
   const width = Math.min(other.gammaPerS, tone.gammaPerS) / Math.PI
   const apart = Math.abs(other.frequencyHz - tone.frequencyHz)
-  return apart < Math.max(0.2 * width, 0.3) || height < OUT_OF_FLANK * magnitudeAt(other, tone.frequencyHz)
+  return apart < Math.max(0.2 * width, 0.3) || height < ripple * magnitudeAt(other, tone.frequencyHz)
 }

@@ -1,7 +1,7 @@
 import { BLOCK_HZ, findCandidates } from './candidates'
 import { bandAround, dropWorst, sweep, withErrors, type FittedTone, type RingSpectrum } from './clusters'
 import { subtractFromRing } from './decay'
-import { roomShare, withRoom } from './roomError'
+import { rippleOf, roomShare, withRoom } from './roomError'
 import { spectrumOf } from './spectrum'
 import { splitGroups } from './split'
 import { fitTones } from './toneFit'
@@ -67,7 +67,7 @@ export function t60FromGamma(gammaPerS: number): number {
  */
 export function findLines(ring: Ring): LineFindings {
   const toHz = Math.min(HIGHEST_HZ, ring.passHz)
-  const search = { sampleRateHz: ring.sampleRateHz, fromHz: FROM_HZ, toHz }
+  const search = { sampleRateHz: ring.sampleRateHz, fromHz: FROM_HZ, toHz, ripple: 0 }
   const spectrum = spectrumOf(ring.samples, ring.sampleRateHz)
   const grid: RingSpectrum = { sampleRateHz: ring.sampleRateHz, length: ring.samples.length, size: spectrum.size, spectrum }
   const noisePerBin = ring.noisePower * ring.samples.length
@@ -75,20 +75,21 @@ export function findLines(ring: Ring): LineFindings {
   let found = findCandidates(ring.samples, search, [], MOST_A_ROUND)
   for (let round = 0; round < ROUNDS && found.candidates.length > 0 && tones.length < MOST_LINES; round++) {
     for (const candidate of found.candidates) tones.push(startTone(grid, candidate, tones))
-    tones = settle(grid, tones, toHz)
+    tones = settle(grid, tones, { toHz, noisePerBin })
     if (round === 0) tones = splitGroups(grid, tones, noisePerBin)
+    search.ripple = rippleOf(roomShare(grid, tones, noisePerBin))
     found = findCandidates(ring.samples, search, tones, Math.min(MOST_A_ROUND, MOST_LINES - tones.length))
   }
-  tones = settle(grid, splitGroups(grid, tones, noisePerBin), toHz, 8)
+  tones = settle(grid, splitGroups(grid, tones, noisePerBin), { toHz, noisePerBin }, 8)
   const share = roomShare(grid, tones, noisePerBin)
   return describe(ring, tones.map(t => withRoom(t, share)), found.threshold, toHz)
 }
 
 /** Fits and drops in turn until what is left holds up. */
-function settle(grid: RingSpectrum, tones: FittedTone[], toHz: number, iterations = 3): FittedTone[] {
+function settle(grid: RingSpectrum, tones: FittedTone[], limits: { toHz: number, noisePerBin: number }, iterations = 3): FittedTone[] {
   let fitted = sweep(grid, sweep(grid, tones, iterations), iterations)
   for (let pass = 0; pass < MOST_PASSES; pass++) {
-    const kept = dropWorst(fitted, toHz)
+    const kept = dropWorst(fitted, limits.toHz, rippleOf(roomShare(grid, fitted, limits.noisePerBin)))
     if (kept.length === fitted.length) break
     fitted = sweep(grid, kept, iterations)
   }

@@ -24,8 +24,7 @@ const WORTH_WAITING = 0.04
 const NEEDED_S = 0.3
 const NEEDED_OVER_NOISE = 30
 
-export function hearTap(band: LowBand, tap: Tap): HeardTap {
-  const ring = cutRing(band, tap)
+export function hearTap(band: LowBand, tap: Tap, ring: CutRing): HeardTap {
   let best: HeardTap = { tap, ring, findings: findLines(ring), delayS: 0 }
   for (const delayS of DELAYS_S) {
     if (best.findings.explainedShare >= WELL_EXPLAINED) break

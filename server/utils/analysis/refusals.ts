@@ -1,6 +1,6 @@
 import type { MonoSound } from './channel'
 import type { LowBand } from './decimate'
-import type { HeardTap } from './listen'
+import type { LineFindings, Ring } from './lines'
 import { RefusalError } from './refusal'
 import { AFTER_ONSET_S, meanPower } from './ring'
 import type { Tap } from './taps'
@@ -12,7 +12,7 @@ const SILENT_PEAK = 1e-3
 /** Ring that a reading needs at the least, s: 0.15 s tells lines 7 Hz apart. */
 const SHORTEST_RING_S = 0.15
 /** Flat tops in more than this share of the first tenth of the ring bend every line's level and add false ones. */
-const CLIPPED_SHARE = 0.005
+export const CLIPPED_SHARE = 0.005
 const CLIP_WINDOW_S = 0.1
 /** A tone's own crest can be level for a few samples; three such crests cannot, since a tap's ring falls. */
 const FLAT_SAMPLES = 3
@@ -71,29 +71,33 @@ export function judgeClipping(found: ClippingFound): ReadingWarning[] {
   return [{ code: 'slightly-clipped', message: 'The loudest moment of the tap is clipped. The reading holds, but a lower gain would make it better.' }]
 }
 
-export function refuseShortRing(heardS: number) {
-  if (heardS < SHORTEST_RING_S) {
+export const longEnough = (ringS: number) => ringS >= SHORTEST_RING_S
+
+export function refuseShortRing(longestS: number) {
+  if (!longEnough(longestS)) {
     throw new RefusalError('too-short', 'The ring of the tap is cut off. Let the head ring for at least a second before the recording ends or the next tap comes.')
   }
 }
 
 /** Share of the ring's energy that decaying lines must explain; speech, claps and cymbals stay below, drums in a hall above. */
 const DRUM_SHARE = 0.5
-const SLOWEST_RISE_S = 0.03
+const SLOWEST_RISE_S = 0.015
 /** Energy may beat, but no later moment is louder than the first by more than this. */
-const LATE_RISE = 1.6
+const LATE_RISE = 1.2
 
-/** True where a tap starts at once, only falls from there, and is a sum of decaying lines. */
-export function soundsLikeDrum(band: LowBand, heard: HeardTap): boolean {
-  const decaying = heard.findings.lines.filter(line => !line.steady)
-  return decaying.length > 0
-    && heard.findings.explainedShare >= DRUM_SHARE
-    && riseTimeS(band, heard.tap) <= SLOWEST_RISE_S
-    && lateOverEarly(heard) <= LATE_RISE
+/** True where a tap starts at once and only falls from there; asked first, since it costs little. */
+export function startsLikeTap(band: LowBand, tap: Tap, ring: Ring): boolean {
+  return riseTimeS(band, tap) <= SLOWEST_RISE_S && lateOverEarly(ring) <= LATE_RISE
 }
 
-export function refuseOtherSounds(sounding: boolean[]) {
-  if (sounding.filter(Boolean).length * 2 <= sounding.length) {
+/** True where a ring is a sum of decaying lines. */
+export function ringsLikeDrum(findings: LineFindings): boolean {
+  return findings.explainedShare >= DRUM_SHARE && findings.lines.some(line => !line.steady)
+}
+
+/** Refuses unless more than half of the taps that were looked at are a head's: in speech one or the other may pass. */
+export function refuseOtherSounds(likeDrum: number, lookedAt: number) {
+  if (likeDrum * 2 <= lookedAt) {
     throw new RefusalError('not-a-drum', 'This does not sound like a tapped head: the sound does not start at once and die away in clear tones. Record only the tap, without speech or music.')
   }
 }
@@ -111,8 +115,8 @@ export function riseTimeS(band: LowBand, tap: Tap): number {
   return 0.005 * powers.findIndex(p => p >= half)
 }
 
-export function lateOverEarly(heard: HeardTap): number {
-  const { samples, sampleRateHz: rate } = heard.ring
+export function lateOverEarly(ring: Ring): number {
+  const { samples, sampleRateHz: rate } = ring
   const span = Math.round(0.06 * rate)
   const early = meanPower(samples, 0, Math.min(span, samples.length))
   let late = 0

@@ -43,6 +43,11 @@ export function roomShare(ring: RingSpectrum, tones: DecayingTone[], noisePerBin
   return Math.sqrt(Math.max(0, ratios[ratios.length >> 1]!) / Math.LN2)
 }
 
+/** Three times the share, its excursions: what stands lower on a line's flank is the room; never less than 5 %, never more than 40. */
+export function rippleOf(share: number): number {
+  return Math.max(0.05, Math.min(0.5, 4 * share))
+}
+
 /** Widens a tone's standard error by the room's ripple: the share times the line's half-width, times what simulation shows. */
 export function withRoom(tone: FittedTone, share: number): FittedTone {
   const roomHz = ROOM_FACTOR * share * tone.gammaPerS / (2 * Math.PI)

@@ -1,6 +1,6 @@
 import { bandAround, groupTones, isGhost, withErrors, type FittedTone, type RingSpectrum } from './clusters'
 import { exponentialSpectrum, type BinBand, type DecayingTone } from './decay'
-import { roomShare } from './roomError'
+import { rippleOf, roomShare } from './roomError'
 import { fitTones, MAX_GAMMA_PER_S, type ToneFit } from './toneFit'
 
 /** One more tone must leave less than this share of the residual: a room's tail, which is no line, gains less. */
@@ -20,13 +20,14 @@ const ABOVE_NOISE = 3
  */
 export function splitGroups(ring: RingSpectrum, tones: FittedTone[], noisePerBin: number): FittedTone[] {
   // What the room ripples on every line is not another tone.
-  const worth = Math.max(WORTH_EXPLAINING, roomShare(ring, tones, noisePerBin) ** 2)
+  const share = roomShare(ring, tones, noisePerBin)
+  const limits = { noisePerBin, worth: Math.max(WORTH_EXPLAINING, share ** 2), ripple: rippleOf(share) }
   let all = [...tones].sort((a, b) => a.frequencyHz - b.frequencyHz)
   for (const group of groupTones(all)) {
     if (group.every(t => t.gammaPerS < 0.5)) continue
     let members = group
     while (members.length < MOST_TOGETHER) {
-      const grown = grow(ring, members, all, { noisePerBin, worth })
+      const grown = grow(ring, members, all, limits)
       if (!grown) break
       const old = members
       all = [...all.filter(t => !old.includes(t)), ...grown].sort((a, b) => a.frequencyHz - b.frequencyHz)
@@ -36,7 +37,7 @@ export function splitGroups(ring: RingSpectrum, tones: FittedTone[], noisePerBin
   return all
 }
 
-function grow(ring: RingSpectrum, members: FittedTone[], all: FittedTone[], limits: { noisePerBin: number, worth: number }): FittedTone[] | undefined {
+function grow(ring: RingSpectrum, members: FittedTone[], all: FittedTone[], limits: { noisePerBin: number, worth: number, ripple: number }): FittedTone[] | undefined {
   const band = bandAround(ring, members, all)
   const base = fitTones(ring, band, members, 4)
   if (base.residual < Math.max(limits.worth * base.total, ABOVE_NOISE * limits.noisePerBin * band.count)) return undefined
@@ -49,7 +50,7 @@ function grow(ring: RingSpectrum, members: FittedTone[], all: FittedTone[], limi
   }
   if (!best || best.residual > SPLIT_GAIN * base.residual) return undefined
   best = fitTones(ring, band, best.tones, 10)
-  return plausible(best.tones, band, ring) ? withErrors(ring, band, best) : undefined
+  return plausible(best.tones, band, ring, limits.ripple) ? withErrors(ring, band, best) : undefined
 }
 
 type Start = { frequencyHz: number, gammaPerS: number }
@@ -83,13 +84,13 @@ function loudestLeft(ring: RingSpectrum, band: BinBand, tones: DecayingTone[]): 
 }
 
 /** Every tone inside the band, none a ghost of another, and of two that overlap neither a cancelling twin of the other. */
-function plausible(tones: DecayingTone[], band: BinBand, ring: RingSpectrum): boolean {
+function plausible(tones: DecayingTone[], band: BinBand, ring: RingSpectrum, ripple: number): boolean {
   const [lo, hi] = [band.from * ring.spectrum.stepHz, (band.from + band.count) * ring.spectrum.stepHz]
   return tones.every((a, i) => a.frequencyHz > lo && a.frequencyHz < hi && a.gammaPerS < 0.95 * MAX_GAMMA_PER_S && tones.every((b, j) => {
     if (i === j) return true
     const apart = Math.abs(a.frequencyHz - b.frequencyHz)
     const decays = (a.gammaPerS + 0.1) / (b.gammaPerS + 0.1)
     const overlap = apart < Math.min(a.gammaPerS, b.gammaPerS) / Math.PI
-    return !isGhost(a, b) && (!overlap || Math.max(decays, 1 / decays) < 3)
+    return !isGhost(a, b, ripple) && (!overlap || Math.max(decays, 1 / decays) < 3)
   }))
 }
