@@ -97,5 +97,7 @@ function build(root: string, started: (pid: number | undefined) => void): Promis
 function errorLines(output: string): string {
   const lines = output.trimEnd().split('\n')
   const first = lines.findIndex(line => /error/i.test(line))
-  return first < 0 ? lines.slice(-30).join('\n') : lines.slice(first, first + 30).join('\n')
+  if (first < 0) return lines.slice(-30).join('\n')
+  const list = lines.findIndex((line, index) => index > first && line.includes('watchFiles:'))
+  return lines.slice(first, list < 0 ? first + 30 : Math.min(list, first + 30)).join('\n')
 }
