@@ -3,6 +3,7 @@ import { type Kysely, sql } from 'kysely'
 import type { InstrumentBody, InstrumentView } from '../../shared/schemas/instrument'
 import type { SignedInUser } from '../../shared/types/roles'
 import { createInstrument } from '../../server/utils/instruments/write'
+import { SHOWCASE_READING } from '../../server/utils/readings/showcase'
 import type { DB } from '../database'
 import type { FilmRow } from '../instruments.table'
 import { ensureFilms } from './films'
@@ -14,8 +15,6 @@ import { type Bench, type HeadHistory, playHistory } from './readings'
 /** Rows of `settings` that say how far the demo has come. */
 export const DEMO_STARTED = 'demo-started'
 export const DEMO_LOADED = 'demo-loaded'
-/** The reading that the public front page shows. */
-export const SHOWCASE_READING = 'showcase-reading'
 
 /** Heads played at once: enough to keep two analysis threads busy. */
 const LANES = 3

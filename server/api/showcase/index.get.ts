@@ -1,0 +1,1 @@
+export default defineRoute({ access: 'public', handler: async () => ({ reading: await findShowcase(useDb()) }) })
