@@ -1,5 +1,6 @@
 import type { LowBand } from './decimate'
-import { findLines, type LineFindings } from './lines'
+import { glideOf } from './glide'
+import { findLines, type LineFindings, type SpectralLine } from './lines'
 import { cutRing, meanPower, type CutRing } from './ring'
 import type { Tap } from './taps'
 
@@ -11,28 +12,48 @@ export interface HeardTap {
   findings: LineFindings
   /** Listening began this long after the usual start, s. */
   delayS: number
+  /** How far above its rest the pitch stood at the start, as a share; 0 where it did not glide. */
+  glideShare: number
 }
 
 /**
- * A tap whose decaying lines leave more than this of its energy unexplained is heard again from later on: a hard stroke
- * glides down in pitch, and a hall's first echoes are not the drum. What is left then is the drum at rest.
+ * A tap is heard again from later on where its decaying lines leave more than this of its energy unexplained, or where
+ * they follow a glide: a hard stroke glides down in pitch, and a hall's first echoes are not the drum. What is left then
+ * is the drum at rest.
  */
 const WELL_EXPLAINED = 0.85
 const DELAYS_S = [0.1, 0.25, 0.5, 1]
+/** Later lines must explain this much more, or, where the earlier ones glide, at most this much less. */
 const WORTH_WAITING = 0.04
 /** Later listening needs this much ring, s, and this power over the noise. */
 const NEEDED_S = 0.3
 const NEEDED_OVER_NOISE = 30
 
 export function hearTap(band: LowBand, tap: Tap, ring: CutRing): HeardTap {
-  let best: HeardTap = { tap, ring, findings: findLines(ring), delayS: 0 }
+  const first = heardFrom(tap, ring, findLines(ring), 0)
+  let best = first
   for (const delayS of DELAYS_S) {
-    if (best.findings.explainedShare >= WELL_EXPLAINED) break
+    if (best.findings.explainedShare >= WELL_EXPLAINED && !best.glides) break
     const later = cutRing(band, { ...tap, lastHitS: tap.lastHitS + delayS })
-    const first = Math.min(later.samples.length, Math.round(0.1 * later.sampleRateHz))
-    if (later.availableS < NEEDED_S || meanPower(later.samples, 0, first) < NEEDED_OVER_NOISE * later.noisePower) break
-    const findings = findLines(later)
-    if (findings.explainedShare > best.findings.explainedShare + WORTH_WAITING) best = { tap, ring, findings, delayS }
+    const opening = meanPower(later.samples, 0, Math.min(later.samples.length, Math.round(0.1 * later.sampleRateHz)))
+    if (later.availableS < NEEDED_S || opening < NEEDED_OVER_NOISE * later.noisePower) break
+    const heard = heardFrom(tap, ring, findLines(later), delayS)
+    const gained = heard.findings.explainedShare - best.findings.explainedShare
+    if (gained > (best.glides ? -WORTH_WAITING : WORTH_WAITING)) best = heard
   }
-  return best
+  return { ...best, glideShare: first.glides ? glideShare(first.findings, best.findings) : 0 }
+}
+
+function heardFrom(tap: Tap, ring: CutRing, findings: LineFindings, delayS: number): HeardTap & { glides: boolean } {
+  return { tap, ring, findings, delayS, glideShare: 0, glides: glideOf(findings).length > 0 }
+}
+
+/** Where the flight's loudest step stood over the strongest line near its foot as heard last, as a share. */
+function glideShare(early: LineFindings, late: LineFindings): number {
+  const flight = glideOf(early)
+  const loudest = flight.reduce((a, b) => (b.levelDb > a.levelDb ? b : a))
+  const rest = late.lines
+    .filter(l => !l.steady && Math.abs(l.frequencyHz / flight[0]!.frequencyHz - 1) < 0.06)
+    .reduce<SpectralLine | undefined>((a, b) => (!a || b.levelDb > a.levelDb ? b : a), undefined)
+  return rest ? Math.max(0, loudest.frequencyHz / rest.frequencyHz - 1) : 0
 }

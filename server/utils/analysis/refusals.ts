@@ -82,12 +82,14 @@ export function refuseShortRing(longestS: number) {
 /** Share of the ring's energy that decaying lines must explain; speech, claps and cymbals stay below, drums in a hall above. */
 const DRUM_SHARE = 0.5
 const SLOWEST_RISE_S = 0.015
-/** Energy may beat, but no later moment is louder than the first by more than this. */
+/** Energy may beat, but no later moment is louder than the first by more than this, and from 0.3 s on all are weaker: a held note is not. */
 const LATE_RISE = 1.2
+const HELD_FROM_S = 0.3
+const HELD_SHARE = 0.8
 
 /** True where a tap starts at once and only falls from there; asked first, since it costs little. */
 export function startsLikeTap(band: LowBand, tap: Tap, ring: Ring): boolean {
-  return riseTimeS(band, tap) <= SLOWEST_RISE_S && lateOverEarly(ring) <= LATE_RISE
+  return riseTimeS(band, tap) <= SLOWEST_RISE_S && lateOverEarly(ring, 0.08) <= LATE_RISE && lateOverEarly(ring, HELD_FROM_S) <= HELD_SHARE
 }
 
 /** True where a ring is a sum of decaying lines. */
@@ -115,11 +117,12 @@ export function riseTimeS(band: LowBand, tap: Tap): number {
   return 0.005 * powers.findIndex(p => p >= half)
 }
 
-export function lateOverEarly(ring: Ring): number {
+/** Loudest 60 ms from a moment on over the first 60 ms, power ratio. */
+export function lateOverEarly(ring: Ring, fromS: number): number {
   const { samples, sampleRateHz: rate } = ring
   const span = Math.round(0.06 * rate)
   const early = meanPower(samples, 0, Math.min(span, samples.length))
   let late = 0
-  for (let from = Math.round(0.08 * rate); from + span <= samples.length; from += span >> 2) late = Math.max(late, meanPower(samples, from, from + span))
+  for (let from = Math.round(fromS * rate); from + span <= samples.length; from += span >> 2) late = Math.max(late, meanPower(samples, from, from + span))
   return early > 0 ? late / early : Infinity
 }
