@@ -1,4 +1,5 @@
 import workerUrl from '../../workers/analysis?node-worker'
+import { log } from '../core/log'
 import { createAnalysisPool, type AnalysisPool } from './pool'
 import type { AnalysisOutcome, AnalysisRequest } from './types'
 
@@ -7,7 +8,7 @@ let pool: AnalysisPool | undefined
 /** Starts the analysis threads; called at start-up so that the first upload finds one warm. */
 export function startAnalysis(): AnalysisPool {
   // The worker's address is known only once the server runs, so not at module load.
-  return pool ??= createAnalysisPool(workerUrl())
+  return pool ??= createAnalysisPool(workerUrl(), { onError: error => log.error({ err: error }, 'analysis thread failed') })
 }
 
 /**

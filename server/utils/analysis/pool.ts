@@ -8,7 +8,12 @@ export interface AnalysisPool {
   close(): Promise<void>
 }
 
-export interface PoolOptions { threads?: number, timeLimitMs?: number }
+export interface PoolOptions {
+  threads?: number
+  timeLimitMs?: number
+  /** Told of a thread that failed outside a reading; readings reject by themselves. */
+  onError?: (error: unknown) => void
+}
 
 /** An analysis that took longer than it may; the recording is at fault, not the caller. */
 export class AnalysisTimeoutError extends Error {
@@ -39,6 +44,8 @@ export function createAnalysisPool(workerUrl: URL, options: PoolOptions = {}): A
     idleTimeout: 60_000,
     resourceLimits: { maxOldGenerationSizeMb: MAX_HEAP_MB },
   })
+  // Without a listener a thread that cannot start would end the whole process.
+  piscina.on('error', error => options.onError?.(error))
   return {
     async analyse(request) {
       const wav = ownBytes(request.wav)
