@@ -7,6 +7,7 @@ import { sessionHooks } from '#imports'
 export default defineNitroPlugin((nitro) => {
   const config = getConfig()
   log.info({ publicUrl: config.publicUrl }, 'starting')
+  startAnalysis()
   startJobs().catch(error => log.error({ err: error }, 'job queue did not start'))
 
   // What the browser is told of its session comes from the row, so a revoked session disappears there too; `ended` lets the page say why.
@@ -23,6 +24,7 @@ export default defineNitroPlugin((nitro) => {
 
   nitro.hooks.hook('close', async () => {
     await stopJobs()
+    await stopAnalysis()
     await closeDb()
   })
 })
