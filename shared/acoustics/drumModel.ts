@@ -37,7 +37,8 @@ export function createDrumModel(options: DrumModelOptions): DrumModel {
   const predictModes = (at: PredictOptions) => predict(options, air, at)
   const fundamentalHz = (tensionNPerM: number, otherTensionNPerM?: number) => {
     const modes = predictModes({ tensionNPerM, otherTensionNPerM, nodalDiameters: [0] })
-    return modes.find(mode => mode.n === 1 && mode.head === 'struck')!.frequencyHz
+    // Of two heads moving together and against each other, the lower one is what the ear takes as the drum's note.
+    return modes.find(mode => mode.n === 1)!.frequencyHz
   }
   return {
     options,

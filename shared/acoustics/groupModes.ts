@@ -1,7 +1,7 @@
 import { GroupMatrices, type GroupState } from './groupMatrices'
 import type { GroupAir } from './constructionAir'
 import { generalisedEigen, solveInPlace } from './linearAlgebra'
-import { describeMode, headDensity, quadratic, type EigenPair } from './modeDescription'
+import { describeMode, quadratic, type EigenPair } from './modeDescription'
 import type { PredictedMode } from './types'
 
 /** Relative change of frequency at which a mode counts as found. */
@@ -98,7 +98,8 @@ function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[])
   const { shapes } = matrices
   const claims: Array<{ pair: EigenPair, shape: number, share: number }> = []
   for (const pair of pairs) {
-    for (let i = 0; i < shapes; i++) claims.push({ pair, shape: i, share: pair.x[i]! ** 2 * headDensity(matrices, i) })
+    // By the film's own energy in that shape: where the shell's air takes part, the head's mode is the one that strains the film.
+    for (let i = 0; i < shapes; i++) claims.push({ pair, shape: i, share: pair.x[i]! ** 2 * matrices.headStiffness[i]! / pair.omegaSquared })
   }
   // Two like heads share each mode evenly: then the lower one is the struck head's.
   claims.sort((a, b) => Math.abs(a.share - b.share) > 1e-6 ? b.share - a.share : a.pair.omegaSquared - b.pair.omegaSquared || a.shape - b.shape)

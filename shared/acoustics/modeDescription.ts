@@ -73,7 +73,10 @@ function coupledLoss(matrices: GroupMatrices, pair: EigenPair, others: EigenPair
     mass -= factor * detuning
     loss -= factor * own
   }
-  return { mass, loss }
+  // Second order holds only while it is small against the first.
+  const most = 0.5 * quadratic(size, lossMatrix, pair.x, pair.x)
+  const shrink = Math.min(1, most / Math.max(Math.hypot(mass, loss), 1e-300))
+  return { mass: mass * shrink, loss: loss * shrink }
 }
 
 /** Overlap weighted by the film's own mass: enough to tell which mode is which. */
@@ -110,7 +113,10 @@ export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: nu
   const inertiaSlope = quadratic(size, work, x, x)
   work.fill(0)
   matrices.fillAir(omega, work, 'loss', false, state.airScale)
-  for (let a = 0; a < air.resonances.length; a++) work[(shapes + a) * (size + 1)] = air.resonances[a]!.lossFactor
+  // A resonance's loss is that of its mass seen from the head, which rises as omega^2 below the resonance.
+  for (let a = 0; a < air.resonances.length; a++) {
+    work[(shapes + a) * (size + 1)] = air.resonances[a]!.lossFactor * omegaSquared / matrices.resonanceSquared[a]!
+  }
   const loss = quadratic(size, work, x, x)
   const coupled = coupledLoss(matrices, pair, others, work)
   work.fill(0)

@@ -112,8 +112,8 @@ export interface DrumModel {
   readonly options: Readonly<DrumModelOptions>
   /** Modes in order of frequency. @throws RangeError when a tension is not finite and positive */
   predictModes(options: PredictOptions): PredictedMode[]
-  /** Frequency of the head's (0,1) with the most of the struck head in it, Hz. */
+  /** Frequency of (0,1), Hz; of two heads, the lower of their two. */
   fundamentalHz(tensionNPerM: number, otherTensionNPerM?: number): number
-  /** Tension at which the struck head's (0,1) sounds at this frequency, N/m. @throws RangeError when none does */
+  /** Tension of the struck head at which fundamentalHz gives this frequency, N/m. @throws RangeError when none does */
   tensionForFundamental(frequencyHz: number, otherTensionNPerM?: number): number
 }

@@ -1,0 +1,105 @@
+import { bendingStiffnessNm } from '../../../shared/acoustics'
+import type { ExplainRequest } from './explanation'
+import type { MatchingContext } from './matchingContext'
+import { INPUT_UNCERTAINTY } from './matchingPriors'
+import type { TensionFit } from './tensionFit'
+import { solveWeighted } from './tensionSolve'
+import type { BudgetLine } from './types'
+
+export interface TensionBudget {
+  lines: BudgetLine[]
+  u95NPerM: number
+  repeatabilityU95NPerM: number
+  /** Residuals against what the model's errors allow: 1 = as expected. */
+  scatter: number
+}
+
+/** Weight of the model's own idea of its errors in judging the scatter, in degrees of freedom. */
+const PRIOR_FREEDOM = 5
+/** No reading repeats better: the hand, the bench and the film's creep. Relative, one standard deviation. */
+const LEAST_REPEATABILITY = 0.0003
+
+/** Two-sided 95 % quantile of Student's t, within 0.3 % from 2 degrees of freedom on. Source: Abramowitz & Stegun 26.7.5. */
+export function studentT95(freedom: number): number {
+  const z = 1.959964
+  const n = Math.max(2, freedom)
+  const g1 = (z ** 3 + z) / 4
+  const g2 = (5 * z ** 5 + 16 * z ** 3 + 3 * z) / 96
+  const g3 = (3 * z ** 7 + 19 * z ** 5 + 17 * z ** 3 - 15 * z) / 384
+  const g4 = (79 * z ** 9 + 776 * z ** 7 + 1482 * z ** 5 - 1920 * z ** 3 - 945 * z) / 92160
+  return z + g1 / n + g2 / n ** 2 + g3 / n ** 3 + g4 / n ** 4
+}
+
+interface Part { name: string, kind: 'A' | 'B', relative: number, source: string, repeatable: boolean, freedom: number }
+
+/**
+ * Uncertainty of the tension by the GUM: each contribution alone, combined in squares, expanded to 95 % by the effective
+ * degrees of freedom (Welch-Satterthwaite).
+ *
+ * Every row of the fit moves ln T by its gain times its own error; inputs move it by the gains times what they do to each
+ * mode's frequency.
+ * Source: JCGM 100:2008, sections 5.1 and G.4.
+ */
+export function tensionBudget(context: MatchingContext, fit: TensionFit, request: ExplainRequest): TensionBudget {
+  const { gains } = solveWeighted(fit.rows)
+  const modeRows = fit.rows.map((row, i) => ({ row, gain: gains[i]! })).filter(r => r.row.source.kind === 'mode')
+  const freedom = Math.max(0, modeRows.length - 1)
+  const chi = modeRows.reduce((sum, { row }) => sum + (row.residual / row.error) ** 2, 0)
+  const scatter = Math.sqrt((PRIOR_FREEDOM + chi) / (PRIOR_FREEDOM + freedom))
+  let noise = 0
+  let spread = 0
+  for (const { row, gain } of modeRows) {
+    if (row.source.kind !== 'mode') continue
+    noise += (gain * row.source.noise) ** 2
+    spread += (gain * row.source.modelError * Math.max(1, scatter)) ** 2
+  }
+  const fromPriors = (kind: string) => Math.sqrt(fit.rows.reduce((sum, row, i) => sum + (row.source.kind === kind ? (gains[i]! * row.error) ** 2 : 0), 0))
+  const inputs = inputParts(context, fit, gains, request)
+  const parts: Part[] = [
+    { name: 'frequency', kind: 'A', relative: Math.sqrt(noise), source: 'standard errors of the lines found in this recording', repeatable: true, freedom: 30 },
+    { name: 'spread across modes', kind: 'A', relative: Math.sqrt(spread), source: `residuals of ${modeRows.length} modes and the model's own error by mode`, repeatable: false, freedom: PRIOR_FREEDOM + freedom },
+    { name: 'air load', kind: 'B', relative: fromPriors('air'), source: `scale of the added air mass on this construction: ${context.priors.airAxisymmetric} for m = 0, ${context.priors.airOthers} for m >= 1`, repeatable: false, freedom: Infinity },
+    { name: 'film bend at the edge', kind: 'B', relative: fromPriors('edge'), source: 'edge factor 0.5 +- 0.2 of the layer sqrt(D/T)', repeatable: false, freedom: Infinity },
+    ...(context.twoHeads ? [{ name: 'other head', kind: 'B' as const, relative: fromPriors('other'), source: 'tension of the head that was not struck', repeatable: false, freedom: Infinity }] : []),
+    ...inputs,
+  ]
+  const variance = parts.reduce((sum, part) => sum + part.relative ** 2, 0)
+  const tension = fit.tensionNPerM
+  const coverage = studentT95(variance ** 2 / parts.reduce((sum, part) => sum + part.relative ** 4 / part.freedom, 1e-30))
+  const repeat = Math.hypot(LEAST_REPEATABILITY, ...parts.filter(part => part.repeatable).map(part => part.relative))
+  return {
+    lines: parts.map(({ name, kind, relative, source, repeatable }) => ({ name, kind, standardNPerM: relative * tension, share: relative ** 2 / variance, source, repeatable })),
+    u95NPerM: coverage * Math.sqrt(variance) * tension,
+    repeatabilityU95NPerM: studentT95(30) * repeat * tension,
+    scatter,
+  }
+}
+
+/** What the stated diameter, areal density, modulus and temperature may be off, as parts of ln T. */
+function inputParts(context: MatchingContext, fit: TensionFit, gains: number[], request: ExplainRequest): Part[] {
+  const { radiusM } = request.instrument
+  let byRadius = 0
+  let byDensity = 0
+  let byModulus = 0
+  let byAir = 0
+  const bend = bendingStiffnessNm(context.film)
+  fit.matched.forEach(({ mode }, i) => {
+    const s = mode.sensitivity
+    const gain = gains[i]!
+    // f follows R as T^2 does backwards, and the air's mass grows with R.
+    byRadius -= gain * (-2 * (s.lnTension + s.lnOtherTension) + s.lnAirScale)
+    byDensity -= gain * s.lnArealDensity
+    // d ln f / d ln D: the bending term itself, and the edge layer, which goes as sqrt(D).
+    const k2 = (2 * Math.PI * mode.idealHz) ** 2 * context.film.arealDensityKgM2 / fit.tensionNPerM
+    byModulus -= gain * (0.5 * bend * k2 / fit.tensionNPerM + 0.5 * fit.edgeFactor * s.edgeFactor)
+    byAir -= gain * s.lnAirScale
+  })
+  const kelvin = request.temperatureC + 273.15
+  const part = (name: string, relative: number, source: string): Part => ({ name, kind: 'B', relative: Math.abs(relative), source, repeatable: name === 'temperature', freedom: Infinity })
+  return [
+    part('diameter', byRadius * INPUT_UNCERTAINTY.radius, `${(2000 * radiusM * INPUT_UNCERTAINTY.radius).toFixed(2)} mm on ${(2000 * radiusM).toFixed(0)} mm, by tape`),
+    part('areal density', byDensity * INPUT_UNCERTAINTY.arealDensity, '1 % of the film\'s data sheet or scale'),
+    part('film modulus', byModulus * INPUT_UNCERTAINTY.modulus, '10 % of the film\'s data sheet'),
+    part('temperature', byAir * INPUT_UNCERTAINTY.temperatureK / kelvin, '1 K at the bench, through the density of the air'),
+  ]
+}

@@ -1,0 +1,83 @@
+import { filmStress } from '../../../shared/acoustics'
+import { tensionBudget } from './budget'
+import type { Explanation, ExplainRequest } from './explanation'
+import type { MatchingContext } from './matchingContext'
+import type { ScoreInput } from './matchingScore'
+import type { TensionFit } from './tensionFit'
+import type { ReadingWarning } from './types'
+
+/** Errors of neighbouring lines are not independent, so odds are tempered before they are believed. */
+const TEMPER = 0.5
+/** Another explanation counts as another one beyond this difference of tension, relative. */
+const DIFFERENT = 0.012
+/** Runner-up shown and reading doubtful when the odds are below these. */
+const SHOWN_ODDS = 200
+const DOUBTFUL_ODDS = 8
+const DOUBTFUL_SCATTER = 2
+const DOUBTFUL_UNEXPLAINED = 0.5
+const NEAR_YIELD = 0.8
+
+type Judged = Pick<Explanation, 'tension' | 'confidence' | 'doubtful' | 'budget' | 'runnerUp' | 'warnings'>
+
+/** Tension with its budget, how far it can be trusted, and what to tell the maker. */
+export function budgetAndConfidence(context: MatchingContext, fits: TensionFit[], input: ScoreInput, request: ExplainRequest): Judged {
+  const best = fits[0]!
+  const budget = tensionBudget(context, best, request)
+  const trusted = best.matched.filter(match => match.weight > 0.3)
+  const explained = trusted.reduce((sum, match) => sum + match.lines.reduce((s, line) => s + line.share, 0), 0)
+  const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > DIFFERENT)
+  const odds = rival ? Math.exp(TEMPER * (best.score - rival.score)) : Infinity
+  const few = trusted.length < 2
+  const poor = budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_UNEXPLAINED
+  const fitQuality = Math.min(1, explained / 0.9) * (few ? 0.5 : 1) * Math.min(1, 1.6 / Math.max(budget.scatter, 1e-3))
+  const doubtful = few || poor || odds < DOUBTFUL_ODDS
+  return {
+    tension: { nPerM: best.tensionNPerM, u95NPerM: budget.u95NPerM, repeatabilityU95NPerM: budget.repeatabilityU95NPerM },
+    confidence: Math.round(1000 * (odds === Infinity ? 1 : odds / (1 + odds)) * Math.max(0, fitQuality)) / 1000,
+    doubtful,
+    budget: budget.lines,
+    runnerUp: rival && odds < SHOWN_ODDS
+      ? { tensionNPerM: rival.tensionNPerM, fundamentalHz: context.model.fundamentalHz(rival.tensionNPerM, rival.otherTensionNPerM), odds: Math.round(10 * odds) / 10 }
+      : null,
+    warnings: warningsFor({ context, best, request, few, poor, close: odds < DOUBTFUL_ODDS ? rival : undefined, onlyAxisymmetric: trusted.every(match => match.mode.m === 0) }),
+  }
+}
+
+interface WarningFacts {
+  context: MatchingContext
+  best: TensionFit
+  request: ExplainRequest
+  few: boolean
+  poor: boolean
+  close: TensionFit | undefined
+  onlyAxisymmetric: boolean
+}
+
+const HALF_WAY = 'Tap softly about three quarters of the way out, a finger resting on the centre, the microphone 5 to 30 cm above the head.'
+const WHOLE = (value: number) => value.toFixed(0)
+
+function warningsFor({ context, best, request, few, poor, close, onlyAxisymmetric }: WarningFacts): ReadingWarning[] {
+  const warnings: ReadingWarning[] = []
+  const tapAgain = context.construction === 'kettle' ? 'Tap at the usual playing spot, a quarter of the way in from the rim.' : HALF_WAY
+  if (few) warnings.push({ code: 'few-modes', message: `Only one tone of the head could be named, so the reading rests on it alone. ${tapAgain}` })
+  if (close) {
+    warnings.push({ code: 'close-runner-up', message: `${WHOLE(close.tensionNPerM)} N/m explains this sound almost as well as ${WHOLE(best.tensionNPerM)} N/m. ${tapAgain} Then trust the tension that both taps agree on.` })
+  }
+  if (poor) warnings.push({ code: 'poor-fit', message: `Some of what was heard is not explained by this head. Check diameter, film and which head was struck; stop other drums and snares from ringing along. ${tapAgain}` })
+  if (onlyAxisymmetric && !few && context.construction !== 'fixture' && context.construction !== 'frame') {
+    warnings.push({ code: 'centre-only', message: `Only tones of a tap at the centre were heard, and the air in the shell moves those most, so the tension is less certain. ${tapAgain}` })
+  }
+  if (context.twoHeads && request.strike === 'centre') {
+    warnings.push({ code: 'two-heads', message: 'The two heads sound together. For a sharper reading tap near the edge and rest the other head on something soft.' })
+  }
+  const { shareOfYield } = filmStress(context.film, best.tensionNPerM)
+  if (shareOfYield > NEAR_YIELD) {
+    warnings.push({ code: 'near-yield', message: `The film is at ${WHOLE(100 * shareOfYield)} % of its yield stress. Do not tighten further; slacken if in doubt, and follow the head maker's limit.` })
+  }
+  const pair = best.matched.find(match => match.mode.m === 1 && match.mode.n === 1 && match.lines.length > 1)
+  if (pair) {
+    const split = Math.abs(pair.lines[0]!.lnFrequency - pair.lines[1]!.lnFrequency)
+    if (split > 0.015) warnings.push({ code: 'uneven', message: `The (1,1) tone is split by ${(100 * split).toFixed(1)} %: the head pulls unevenly. Even it out rod by rod before tuning to pitch.` })
+  }
+  return warnings
+}

@@ -1,0 +1,50 @@
+import type { Construction } from './types'
+
+/** What the model cannot know, as standard deviations; physics.md sections 2, 4 and 7. */
+export interface ModelPriors {
+  /** Of ln(air scale) of m = 0. */
+  airAxisymmetric: number
+  /** Of ln(air scale) of m >= 1. */
+  airOthers: number
+  /** Of the edge factor around 0.5 (it lies between 0 and 1). */
+  edgeFactor: number
+  /** Own relative error of frequency of each m = 0 mode: shape of the shell's air, leaks, the other head. */
+  axisymmetricError: number
+  /** The same for m >= 1. */
+  othersError: number
+}
+
+/**
+ * The air's scale is known best where nothing but open air is near. A shell's mouth, vent, legs and stand, a bowl's shape
+ * and the coupling of two heads are the maker's own; each instrument's readings will narrow them.
+ */
+const PRIORS: Record<Construction, ModelPriors> = {
+  'fixture': { airAxisymmetric: 0.02, airOthers: 0.01, edgeFactor: 0.2, axisymmetricError: 0.001, othersError: 0.0007 },
+  'frame': { airAxisymmetric: 0.03, airOthers: 0.015, edgeFactor: 0.2, axisymmetricError: 0.001, othersError: 0.0007 },
+  'open': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.005, othersError: 0.001 },
+  'kettle': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.004, othersError: 0.001 },
+  'double-headed': { airAxisymmetric: 0.08, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.003, othersError: 0.0012 },
+}
+
+export function modelPriors(construction: Construction): ModelPriors {
+  return PRIORS[construction]
+}
+
+/** Standard deviation of N_2m / N_0 on a head that nobody calls uneven: 1.5 % swing at the rim, falling with the harmonic. */
+const HARMONIC_RATIO = 0.01
+
+/**
+ * Relative standard error of one mode's frequency as the even model predicts it.
+ *
+ * An uneven head splits (m,n) by (4m - 1)/(2 (4m^2 - 1)) N_2m/N_0 and moves m = 0, n >= 4 and m = 2 at second order.
+ * @param asPair  both lines were heard: their mean is free of the split
+ * Source: physics.md sections 4 and 7.
+ */
+export function modeModelError(priors: ModelPriors, m: number, n: number, asPair: boolean): number {
+  if (m === 0) return Math.hypot(priors.axisymmetricError, n >= 4 ? 0.0015 : 0.0004 * n)
+  const split = asPair ? 0 : (4 * m - 1) / (2 * (4 * m * m - 1)) * HARMONIC_RATIO / 2 / Math.sqrt(m)
+  return Math.hypot(priors.othersError, split, m === 2 ? 0.0004 : 0, 0.0003 * (n - 1))
+}
+
+/** Standard uncertainties of what the maker states, relative unless said: tape on the diameter, data sheet of the film. */
+export const INPUT_UNCERTAINTY = { radius: 0.001, arealDensity: 0.01, modulus: 0.1, temperatureK: 1 }
