@@ -26,7 +26,7 @@ function errorRatios(snrDb: number, gammaPerS: number) {
     toBound += (error / frequencyBoundHz(tone, noise, SAMPLES, RATE)) ** 2
     toStated += (error / line.standardErrorHz) ** 2
   }
-  return { found: `${found} of ${RUNS}`, 'error / bound': Math.sqrt(toBound / found).toFixed(2), 'error / stated': Math.sqrt(toStated / found).toFixed(2) }
+  return { 'found': `${found} of ${RUNS}`, 'error / bound': Math.sqrt(toBound / found).toFixed(2), 'error / stated': Math.sqrt(toStated / found).toFixed(2) }
 }
 
 console.table(Object.fromEntries([0, 10, 20, 40].flatMap(snrDb => [3, 10, 30, 90].map(gamma => [`${snrDb} dB, decay ${gamma}/s`, errorRatios(snrDb, gamma)]))))
