@@ -1,5 +1,6 @@
 import type { MatchingContext } from './matchingContext'
-import { scoreHypothesis, type ScoredMode, type ScoreInput } from './matchingScore'
+import type { ScoredMode, ScoreInput } from './matchingInput'
+import { scoreHypothesis } from './matchingScore'
 import { MOST_RATIO, modeTables, type ModeTrack } from './matchingTables'
 
 /** A place in the space of tensions worth a closer look. */
@@ -10,8 +11,8 @@ export interface Candidate {
   score: number
 }
 
-const SCAN_STEP = { one: 0.004, two: 0.012 }
-const SCAN_RATIO_STEP = 0.1
+const SCAN_STEP = { one: 0.005, two: 0.016 }
+const SCAN_RATIO_STEP = 0.14
 /** Two candidates nearer than this in ln T are one. */
 const SEPARATE = 0.012
 const MOST_CANDIDATES = 14

@@ -3,14 +3,14 @@ import type { ExplainLines, Explanation } from './explanation'
 import { scanHypotheses } from './hypotheses'
 import { matchingContext } from './matchingContext'
 import { matchedModes, unexplainedPeaks } from './matchingReport'
-import { scoreInput, type ScoreInput } from './matchingScore'
+import { scoreInput, type ScoreInput } from './matchingInput'
 import { RefusalError } from './refusal'
-import { fitTension, stateOf, type TensionFit } from './tensionFit'
+import { fitTension, stateOf, type FitEffort, type TensionFit } from './tensionFit'
 
-/** Candidates that are fitted in full, and rounds of the first look and of the full fit. */
-const FINALISTS = 5
-const FIRST_ROUNDS = 2
-const FULL_ROUNDS = 5
+/** Candidates that are fitted in full, and the effort of the first look and of the full fit. */
+const FINALISTS = 4
+const FIRST_LOOK: FitEffort = { predictions: 1, rounds: 3, widen: 1 }
+const FULL_FIT: FitEffort = { predictions: 4, rounds: 4, widen: 0.5 }
 /** Predictions reach this far above the highest line: modes that should be heard there count as missing. */
 const ABOVE_HIGHEST = 1.25
 
@@ -41,7 +41,7 @@ export const explainLines: ExplainLines = (findings, request): Explanation => {
 function rankedFits(context: ReturnType<typeof matchingContext>, input: ScoreInput): TensionFit[] {
   const highest = Math.max(...input.lines.map(line => line.line.frequencyHz))
   const near: ScoreInput = { ...input, maxHz: Math.min(input.maxHz, ABOVE_HIGHEST * highest) }
-  const first = scanHypotheses(context, input).map(candidate => fitTension(context, near, stateOf(context, candidate), FIRST_ROUNDS))
+  const first = scanHypotheses(context, input).map(candidate => fitTension(context, near, stateOf(context, candidate), FIRST_LOOK))
   first.sort((a, b) => b.score - a.score)
   const finalists: TensionFit[] = []
   for (const fit of first) {
@@ -52,7 +52,7 @@ function rankedFits(context: ReturnType<typeof matchingContext>, input: ScoreInp
   const full = finalists.map(fit => fitTension(context, near, {
     lnTension: Math.log(fit.tensionNPerM), lnOther: Math.log(fit.otherTensionNPerM),
     lnAir: [Math.log(fit.airScale.axisymmetric), Math.log(fit.airScale.others)], edge: fit.edgeFactor,
-  }, FULL_ROUNDS, 0.5))
+  }, FULL_FIT))
   full.sort((a, b) => b.score - a.score)
   return full
 }

@@ -2,7 +2,7 @@ import { filmStress } from '../../../shared/acoustics'
 import { tensionBudget } from './budget'
 import type { Explanation, ExplainRequest } from './explanation'
 import type { MatchingContext } from './matchingContext'
-import type { ScoreInput } from './matchingScore'
+import type { ScoreInput } from './matchingInput'
 import type { TensionFit } from './tensionFit'
 import type { ReadingWarning } from './types'
 

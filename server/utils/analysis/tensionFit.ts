@@ -2,7 +2,8 @@ import type { PredictedMode } from '../../../shared/acoustics'
 import type { Candidate } from './hypotheses'
 import type { MatchingContext } from './matchingContext'
 import { modeModelError } from './matchingPriors'
-import { assignLines, scoreHypothesis, type ScoreInput, type ScoredLine, type ScoredMode } from './matchingScore'
+import type { ScoreInput, ScoredLine, ScoredMode } from './matchingInput'
+import { assignLines, scoreHypothesis } from './matchingScore'
 import { solveWeighted, type FitRow } from './tensionSolve'
 
 /** A mode and the line or pair of lines taken for it. */
@@ -47,6 +48,10 @@ const EDGE_MEAN = 0.5
 const RATIO_SPREAD = 0.7
 /** A residual beyond this many standard errors is more likely a wrong name than a bad prediction. */
 const OUTLIER_Z = 3.2
+/** Share of the scan's tolerance that always stays when lines are named. */
+const LEAST_WIDEN = 0.15
+/** Sensitivities carry the modes over this change of ln T to a part in 10^5. */
+const CLOSE_ENOUGH = 0.002
 /** Largest step in one round, ln. */
 const MOST_STEP = { tension: 0.06, other: 0.25 }
 
@@ -112,33 +117,65 @@ export function fitRows(context: MatchingContext, matched: MatchedLines[], state
 
 const clamp = (value: number, most: number) => Math.min(most, Math.max(-most, value))
 
+/** Modes moved along their sensitivities from where they were predicted: good for steps of a few per cent. */
+function movedModes(modes: PredictedMode[], from: FitState, to: FitState): PredictedMode[] {
+  return modes.map((mode) => {
+    const s = mode.sensitivity
+    const air = mode.m === 0 ? to.lnAir[0] - from.lnAir[0] : to.lnAir[1] - from.lnAir[1]
+    const change = s.lnTension * (to.lnTension - from.lnTension) + s.lnOtherTension * (to.lnOther - from.lnOther) + s.lnAirScale * air + s.edgeFactor * (to.edge - from.edge)
+    return { ...mode, frequencyHz: mode.frequencyHz * Math.exp(change) }
+  })
+}
+
+export interface FitEffort {
+  /** Predictions by the model; between them modes move along their sensitivities. */
+  predictions: number
+  /** Rounds of naming and solving after each prediction. */
+  rounds: number
+  /** Share of the scan's wide tolerance used when naming in the first round; it shrinks to the model's own. */
+  widen: number
+}
+
 /**
  * Posterior of ln T for one hypothesis: Gauss-Newton on ln T, the other head's tension, two air scales and the edge
  * factor, with lines named afresh in every round and outliers weighted down.
- *
- * @param rounds  rounds of naming and solving
- * @param widen   share of the scan's wide tolerance used when naming in the first round; it shrinks to the model's own
  */
-export function fitTension(context: MatchingContext, input: ScoreInput, start: FitState, rounds: number, widen = 1): TensionFit {
-  const state: FitState = { ...start, lnAir: [...start.lnAir] }
-  let modes = predictAt(context, state, input.maxHz)
-  for (let round = 0; round < rounds; round++) {
-    const scored = scoredModes(context, modes, input, widen * Math.max(0.15, 1 - round / 2))
-    const matched = matchedLines(context, modes, input, assignLines(scored, input))
-    if (matched.length === 0) break
-    const { step } = solveWeighted(fitRows(context, matched, state))
-    state.lnTension += clamp(step[0]!, MOST_STEP.tension)
-    state.lnOther = context.twoHeads ? state.lnOther + clamp(step[1]!, MOST_STEP.other) : state.lnTension
-    state.lnAir = [clamp(state.lnAir[0] + step[2]!, 4 * context.priors.airAxisymmetric), clamp(state.lnAir[1] + step[3]!, 4 * context.priors.airOthers)]
-    state.edge = Math.min(1, Math.max(0, state.edge + clamp(step[4]!, 0.3)))
-    modes = predictAt(context, state, input.maxHz)
-    if (round > 0 && Math.abs(step[0]!) < 2e-6) break
+export function fitTension(context: MatchingContext, input: ScoreInput, start: FitState, effort: FitEffort): TensionFit {
+  let state = start
+  let modes: PredictedMode[] = []
+  let widen = effort.widen
+  for (let prediction = 0; prediction < effort.predictions; prediction++) {
+    const origin = state
+    const predicted = predictAt(context, origin, input.maxHz)
+    modes = predicted
+    for (let round = 0; round < effort.rounds; round++) {
+      const scored = scoredModes(context, modes, input, widen)
+      const matched = matchedLines(context, modes, input, assignLines(scored, input))
+      if (matched.length === 0) break
+      const { step } = solveWeighted(fitRows(context, matched, state))
+      state = stepped(context, state, step)
+      modes = movedModes(predicted, origin, state)
+      widen = Math.max(LEAST_WIDEN, widen / 2)
+      if (Math.abs(step[0]!) < 1e-6) break
+    }
+    if (Math.abs(state.lnTension - origin.lnTension) < CLOSE_ENOUGH && Math.abs(state.lnOther - origin.lnOther) < 4 * CLOSE_ENOUGH) break
   }
   return summarise(context, input, state, modes)
 }
 
+function stepped(context: MatchingContext, state: FitState, step: number[]): FitState {
+  const { priors, twoHeads } = context
+  const lnTension = state.lnTension + clamp(step[0]!, MOST_STEP.tension)
+  return {
+    lnTension,
+    lnOther: twoHeads ? state.lnOther + clamp(step[1]!, MOST_STEP.other) : lnTension,
+    lnAir: [clamp(state.lnAir[0] + step[2]!, 4 * priors.airAxisymmetric), clamp(state.lnAir[1] + step[3]!, 4 * priors.airOthers)],
+    edge: Math.min(1, Math.max(0, state.edge + clamp(step[4]!, 0.3))),
+  }
+}
+
 function summarise(context: MatchingContext, input: ScoreInput, state: FitState, modes: PredictedMode[]): TensionFit {
-  const scored = scoredModes(context, modes, input, 0.15)
+  const scored = scoredModes(context, modes, input, LEAST_WIDEN)
   const assignment = assignLines(scored, input)
   const matched = matchedLines(context, modes, input, assignment)
   const rows = fitRows(context, matched, state)

@@ -1,0 +1,109 @@
+import { frequencyLevelDb, placeLevelDb, strikePlaces, type StrikePlace } from './levels'
+import type { ExplainRequest } from './explanation'
+import type { LineFindings, SpectralLine } from './lines'
+import type { MatchingContext } from './matchingContext'
+import { modeModelError } from './matchingPriors'
+import type { ModeTrack } from './matchingTables'
+
+/** One predicted mode while hypotheses are scored; what follows `placeDb` is set anew for each hypothesis. */
+export interface ScoredMode {
+  m: number
+  n: number
+  other: boolean
+  /** Relative standard deviation of the prediction while the air's scale is not fitted. */
+  spread: number
+  /** Expected level at each strike place, dB, without its dependence on frequency; and the loudest of them. */
+  placeDb: Float64Array
+  loudestDb: number
+  lnFrequency: number
+  damping: number
+  /** What frequency alone does to the expected level, and the level a line there had to reach to be found, dB. */
+  bandDb: number
+  floorDb: number
+  /** Level of the line taken for this mode, dB; NaN where none was. */
+  heardDb: number
+  /** Lines taken for this mode so far. */
+  used: number
+}
+
+export interface ScoredLine {
+  line: SpectralLine
+  /** ln of the undamped frequency. */
+  lnFrequency: number
+  /** Relative standard error, noise and what the width of the line makes doubtful. */
+  spread: number
+  levelDb: number
+  /** Share of the amplitude of all decaying lines. */
+  share: number
+}
+
+export interface ScoreInput {
+  /** Loudest first. */
+  lines: ScoredLine[]
+  places: StrikePlace[]
+  maxHz: number
+  loudestHz: number
+  /** Sets bandDb and floorDb from lnFrequency. */
+  readBand: (mode: ScoredMode) => void
+  describe: (track: Pick<ModeTrack, 'm' | 'n' | 'other' | 'airSensitivity'>) => ScoredMode
+}
+
+/** A width that is off by the room, the finger or a neighbour: share of the half-width that frequency may be off by. */
+const WIDTH_DOUBT = 0.06
+const BAND_STEP = 0.01
+const HIGHEST_HZ = 3000
+
+export function scoreInput(context: MatchingContext, findings: LineFindings, request: ExplainRequest): ScoreInput {
+  const decaying = findings.lines.filter(line => !line.steady && line.frequencyHz > 0)
+  const amplitude = (line: SpectralLine) => 10 ** (line.levelDb / 20)
+  const total = decaying.reduce((sum, line) => sum + amplitude(line), 0)
+  const places = strikePlaces(request.strike)
+  const damped = request.centreDamped && request.strike !== 'centre'
+  const lines = decaying.map((line) => {
+    const undamped = Math.hypot(line.frequencyHz, line.gammaPerS / (2 * Math.PI))
+    const doubt = WIDTH_DOUBT * line.gammaPerS / (2 * Math.PI)
+    return { line, lnFrequency: Math.log(undamped), spread: Math.hypot(line.standardErrorHz, doubt) / undamped, levelDb: line.levelDb, share: amplitude(line) / total }
+  }).sort((a, b) => b.levelDb - a.levelDb)
+  const levels = new Map<string, Float64Array>()
+  const levelsOf = (m: number, n: number, other: boolean) => {
+    const name = `${m},${n},${other}`
+    const known = levels.get(name)
+    if (known) return known
+    const made = Float64Array.from(places, place => placeLevelDb(m, n, place.x, other, damped))
+    levels.set(name, made)
+    return made
+  }
+  return {
+    lines, places,
+    maxHz: Math.min(findings.toHz, HIGHEST_HZ),
+    loudestHz: lines[0]?.line.frequencyHz ?? 100,
+    readBand: bandReader(findings),
+    describe: (track) => {
+      const placeDb = levelsOf(track.m, track.n, track.other)
+      const air = track.m === 0 ? context.priors.airAxisymmetric : context.priors.airOthers
+      return {
+        m: track.m, n: track.n, other: track.other, placeDb, loudestDb: Math.max(...placeDb),
+        spread: Math.hypot(modeModelError(context.priors, track.m, track.n, false), Math.abs(track.airSensitivity) * 0.7 * air, context.twoHeads ? 0.005 : 0.002),
+        lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: NaN, used: 0,
+      }
+    },
+  }
+}
+
+/** Tables over ln f of what would otherwise be computed for every mode of every hypothesis. */
+function bandReader({ detection, fromHz }: LineFindings): (mode: ScoredMode) => void {
+  const from = Math.log(20)
+  const count = Math.ceil((Math.log(2 * HIGHEST_HZ) - from) / BAND_STEP) + 1
+  const band = new Float64Array(count)
+  const floor = new Float64Array(count)
+  for (let i = 0; i < count; i++) {
+    const hz = Math.exp(from + i * BAND_STEP)
+    band[i] = frequencyLevelDb(hz)
+    floor[i] = detection.levelDb[Math.min(detection.levelDb.length - 1, Math.max(0, Math.round((hz - fromHz) / detection.stepHz)))] ?? -40
+  }
+  return (mode) => {
+    const at = Math.min(count - 1, Math.max(0, Math.round((mode.lnFrequency - from) / BAND_STEP)))
+    mode.bandDb = band[at]!
+    mode.floorDb = floor[at]!
+  }
+}
