@@ -6,7 +6,7 @@ export default defineRoute({
   params: idParams,
   body: personPatchBody,
   async handler({ user, params, body }) {
-    await changePerson(params.id, body, user)
+    await changePerson(useDb(), params.id, body, user)
     return { ok: true }
   },
 })

@@ -1,5 +1,5 @@
 import { sql } from 'kysely'
-import { type DB, type Transaction, useDb } from '../core/db'
+import type { DB, Kysely, Transaction } from '../core/db'
 import { DomainError, notFound } from '../core/errors'
 import { enqueue } from '../core/jobs'
 import type { PersonPatchBody } from '../../../shared/schemas/people'
@@ -14,8 +14,8 @@ type Viewer = Pick<SignedInUser, 'id' | 'role'>
  * A new role, or an account closed or opened again. Ends the person's sessions at once.
  * @throws DomainError not-found; conflict for oneself and for the last owner
  */
-export async function changePerson(id: string, patch: PersonPatchBody, by: Viewer): Promise<void> {
-  await useDb().transaction().execute(async (trx) => {
+export async function changePerson(db: Kysely<DB>, id: string, patch: PersonPatchBody, by: Viewer): Promise<void> {
+  await db.transaction().execute(async (trx) => {
     const { before, otherOwners } = await lockWithOwners(trx, id, by)
     const active = before.deactivated_at === null
     const role = patch.role ?? before.role
@@ -46,8 +46,8 @@ async function lockWithOwners(trx: Transaction<DB>, id: string, by: Viewer) {
 }
 
 /** Sends the invitation again to somebody who has not chosen a password yet. @throws DomainError not-found, conflict */
-export async function inviteAgain(id: string, by: Viewer): Promise<void> {
-  await useDb().transaction().execute(async (trx) => {
+export async function inviteAgain(db: Kysely<DB>, id: string, by: Viewer): Promise<void> {
+  await db.transaction().execute(async (trx) => {
     const person = await lockPerson(trx, id)
     if (by.role !== 'owner' && person.role !== 'customer') throw notFound('This person')
     if (person.password_hash || person.deactivated_at) throw new DomainError('conflict', 'This person has a password already, or the account is closed.')

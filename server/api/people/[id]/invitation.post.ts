@@ -5,7 +5,7 @@ export default defineRoute({
   access: ['owner', 'maker', 'staff'],
   params: idParams,
   async handler({ user, params }) {
-    await inviteAgain(params.id, user)
+    await inviteAgain(useDb(), params.id, user)
     return { ok: true }
   },
 })
