@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { constructionSchema } from './instrument'
+import type { constructionSchema } from './instrument'
 import { idSchema, limitSchema, nameSchema, noteSchema, numeric } from './common'
 import type { PriceLineKind } from './prices'
 

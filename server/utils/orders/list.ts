@@ -1,6 +1,6 @@
 import { sql } from 'kysely'
 import { z } from 'zod'
-import { ordersQuery, type OrdersPage } from '../../../shared/schemas/order'
+import type { ordersQuery, OrdersPage } from '../../../shared/schemas/order'
 import type { SignedInUser } from '../../../shared/types/roles'
 import type { DB, Kysely } from '../core/db'
 import { DomainError } from '../core/errors'
