@@ -23,7 +23,7 @@ const STOPBAND_DB = 70
  * @param samples       at sampleRateHz
  * @param sampleRateHz  Hz, 8000 to 192 000
  */
-export function toLowBand(samples: Float32Array, sampleRateHz: number): LowBand {
+export function toLowBand(samples: Float32Array | Float64Array, sampleRateHz: number): LowBand {
   const factor = Math.max(1, Math.floor(sampleRateHz / MIN_RATE_HZ))
   if (factor === 1) return { sampleRateHz, samples: Float64Array.from(samples), factor, filterLength: 1, passHz: 0.45 * sampleRateHz }
   const h = kaiserLowPass(0.5 / factor, 0.2 / factor)

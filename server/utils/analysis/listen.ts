@@ -29,7 +29,7 @@ const WORTH_WAITING = 0.04
 const NEEDED_S = 0.3
 const NEEDED_OVER_NOISE = 30
 
-export function hearTap(band: LowBand, tap: Tap, ring: CutRing): HeardTap {
+export function hearTap(band: LowBand, tap: Tap, ring: CutRing = cutRing(band, tap)): HeardTap {
   const first = heardFrom(tap, ring, findLines(ring), 0)
   let best = first
   for (const delayS of DELAYS_S) {
