@@ -1,8 +1,11 @@
-import { besselJUpTo, besselZero } from '#shared/acoustics'
+import { quantile } from 'd3-array'
+import { besselJUpTo, besselZero } from '../../shared/acoustics'
 import type { ModeView } from '~/utils/readingParts'
 
 /** Side of the look-up of the membrane's motion; 160 columns keep a nodal line thinner than a grain at 320 px. */
 const GRID = 160
+/** Steps of the radial shapes' tables. */
+const STEPS = 256
 
 export interface Sand {
   /** Grain positions in units of the radius, x to the right, y up. */
@@ -38,36 +41,34 @@ export function strewSand(count: number, seed: number): Sand {
 }
 
 /**
- * How strongly each place of the head moves, 0 to 1, on a grid: the root of the energy summed over the modes,
- * sum of g J_m(alpha r)^2 cos^2 m(theta - theta0), g from the level. Modes differ in frequency, so their energies add.
+ * How far each place of the head moves, on a grid, 1 where nine tenths of the head move less: the matched modes frozen at
+ * the moment of the tap, |sum of g J_m(alpha r) cos m(theta - theta0)|, each in phase under the beater. g weighs by
+ * acceleration, which is what lifts sand, and halves the decibels between modes so that weak ones draw their lines too.
  * @param strikeAngle  theta0, angle of the strike, rad, anticlockwise from the right
+ * @param strikeRatio  place of the strike as a share of the radius
  */
-export function headMotion(modes: readonly Pick<ModeView, 'm' | 'n' | 'levelDb'>[], strikeAngle: number): Float32Array {
-  const energy = new Float64Array(GRID * GRID)
+export function headMotion(modes: readonly Pick<ModeView, 'm' | 'n' | 'levelDb' | 'measuredHz'>[], strikeAngle: number, strikeRatio: number): Float32Array {
   const shapes = modes.map((mode) => {
     const alpha = besselZero(mode.m, mode.n)
-    const table = Float64Array.from({ length: 257 }, (_, step) => besselJUpTo(mode.m, alpha * step / 256)[mode.m]!)
-    const peak = table.reduce((most, value) => Math.max(most, Math.abs(value)), 0)
-    return { m: mode.m, table: table.map(value => value / peak), gain: 10 ** (mode.levelDb / 20) }
+    const radial = Float64Array.from({ length: STEPS + 1 }, (_, step) => besselJUpTo(mode.m, alpha * step / STEPS)[mode.m]!)
+    const inPhase = Math.sign(radial[Math.round(strikeRatio * STEPS)]!) || 1
+    return { m: mode.m, radial, gain: inPhase * 10 ** (mode.levelDb / 40) * (mode.measuredHz / modes[0]!.measuredHz) ** 2 }
   })
-  let strongest = 0
-  for (let row = 0; row < GRID; row++) {
-    for (let column = 0; column < GRID; column++) {
-      const x = (column + 0.5) / GRID * 2 - 1
-      const y = 1 - (row + 0.5) / GRID * 2
-      const radius = Math.hypot(x, y)
-      if (radius > 1.02) continue
-      const angle = Math.atan2(y, x) - strikeAngle
-      let sum = 0
-      for (const shape of shapes) {
-        const w = shape.table[Math.min(256, Math.round(radius * 256))]! * Math.cos(shape.m * angle)
-        sum += shape.gain * w * w
-      }
-      energy[row * GRID + column] = sum
-      strongest = Math.max(strongest, sum)
-    }
+  const motion = new Float32Array(GRID * GRID)
+  const inside: number[] = []
+  for (let cell = 0; cell < GRID * GRID; cell++) {
+    const x = (cell % GRID + 0.5) / GRID * 2 - 1
+    const y = 1 - (Math.floor(cell / GRID) + 0.5) / GRID * 2
+    const radius = Math.hypot(x, y)
+    if (radius > 1) continue
+    const angle = Math.atan2(y, x) - strikeAngle
+    let sum = 0
+    for (const { m, radial, gain } of shapes) sum += gain * radial[Math.round(radius * STEPS)]! * Math.cos(m * angle)
+    motion[cell] = Math.abs(sum)
+    inside.push(motion[cell]!)
   }
-  return Float32Array.from(energy, value => strongest > 0 ? Math.sqrt(value / strongest) : 0)
+  const most = quantile(inside, 0.9) || 1
+  return motion.map(value => Math.min(1, value / most))
 }
 
 /**

@@ -36,24 +36,31 @@ export interface PlacedFlag extends Flag { labelY: number, anchor: 'start' | 'en
 interface FlagRoom { labelWidth: number, lineHeight: number, topY: number, rightX: number, gap: number }
 
 /**
- * Flags stand on their peaks; where a label would lie on another label or on another flag's pole, it climbs a line at a
- * time. At the right edge it hangs to the left of its pole.
+ * Flags stand on their peaks, lowest peaks placed first. A label hangs to the right of its pole, or to the left where that
+ * is taken; where both lie on another label or across another pole, it climbs half a line at a time.
  */
 export function placeFlags(flags: readonly Flag[], room: FlagRoom): PlacedFlag[] {
   const placed: (PlacedFlag & { left: number, right: number })[] = []
-  for (const flag of [...flags].sort((a, b) => b.peakY - a.peakY || a.x - b.x)) {
-    const anchor = flag.x + room.gap + room.labelWidth > room.rightX ? 'end' as const : 'start' as const
-    const left = anchor === 'start' ? flag.x - 2 : flag.x - room.gap - room.labelWidth
-    const right = anchor === 'start' ? flag.x + room.gap + room.labelWidth : flag.x + 2
-    let labelY = flag.peakY - room.lineHeight * 1.4
-    const blocked = () => placed.some((other) => {
-      const sameRow = Math.abs(other.labelY - labelY) < room.lineHeight && left < other.right && right > other.left
-      const poleThroughLabel = flag.x > other.left && flag.x < other.right && other.labelY > labelY && other.labelY < flag.peakY
-      const labelOnPole = other.x > left && other.x < right && labelY > other.labelY - room.lineHeight && labelY < other.peakY
-      return sameRow || labelOnPole || (poleThroughLabel && other.x !== flag.x)
+  const extent = (flag: Flag, anchor: 'start' | 'end') => anchor === 'start'
+    ? { left: flag.x - 2, right: flag.x + room.gap + room.labelWidth }
+    : { left: flag.x - room.gap - room.labelWidth, right: flag.x + 2 }
+  const isFree = (flag: Flag, labelY: number, { left, right }: { left: number, right: number }) => right <= room.rightX && left >= 0
+    && placed.every((other) => {
+      const onLabel = Math.abs(other.labelY - labelY) < room.lineHeight && left < other.right && right > other.left
+      const onItsPole = other.x > left && other.x < right && labelY > other.labelY - room.lineHeight && labelY - room.lineHeight < other.peakY
+      const poleOnItsLabel = flag.x > other.left && flag.x < other.right && other.labelY > labelY && other.labelY - room.lineHeight < flag.peakY
+      return !onLabel && !onItsPole && !poleOnItsLabel
     })
-    while (labelY > room.topY && blocked()) labelY -= room.lineHeight * 0.5
-    placed.push({ ...flag, labelY: Math.max(room.topY, labelY), anchor, left, right })
+    // Nor across the poles of flags still to come, which start at their peaks.
+    && flags.every(other => other.key === flag.key || other.x < left || other.x > right || labelY < other.peakY - 2.6 * room.lineHeight || labelY - room.lineHeight > other.peakY)
+  for (const flag of [...flags].sort((a, b) => b.peakY - a.peakY || a.x - b.x)) {
+    let best: { labelY: number, anchor: 'start' | 'end' } | undefined
+    for (let labelY = flag.peakY - room.lineHeight * 1.4; labelY > room.topY && !best; labelY -= room.lineHeight / 2) {
+      const anchor = (['start', 'end'] as const).find(side => isFree(flag, labelY, extent(flag, side)))
+      if (anchor) best = { labelY, anchor }
+    }
+    const { labelY, anchor } = best ?? { labelY: room.topY, anchor: flag.x + room.labelWidth > room.rightX ? 'end' as const : 'start' as const }
+    placed.push({ ...flag, labelY, anchor, ...extent(flag, anchor) })
   }
   return placed.map(({ left: _left, right: _right, ...flag }) => flag)
 }
