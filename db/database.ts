@@ -34,8 +34,8 @@ pg.types.setTypeParser(pg.types.builtins.INT8, Number)
 pg.types.setTypeParser(pg.types.builtins.NUMERIC, Number)
 
 /** A pool and query builder on one database. The caller ends it with `destroy()`. */
-export function openDatabase(connectionString: string, max = 10): Kysely<DB> {
-  const pool = new pg.Pool({ connectionString, max, connectionTimeoutMillis: 5_000 })
+export function openDatabase(connectionString: string, max = 10, connectTimeoutMs = 5_000): Kysely<DB> {
+  const pool = new pg.Pool({ connectionString, max, connectionTimeoutMillis: connectTimeoutMs })
   // Without a listener an idle client's lost connection would end the process.
   pool.on('error', () => undefined)
   return new Kysely<DB>({ dialect: new PostgresDialect({ pool }) })

@@ -10,7 +10,7 @@ export interface CalendarOptions { now: Date, wantedNPerM: number, visits: numbe
 /** A workshop that is warmer in July than in January, by the day of the year. */
 const roomTemperatureC = (at: Date, random: SeededRandom) => {
   const yearShare = (at.getTime() / DAY_MS % 365.25) / 365.25
-  return Math.round((19.5 - 3 * Math.cos(2 * Math.PI * yearShare) + random.normal()) * 2) / 2
+  return Math.round(19.5 - 3 * Math.cos(2 * Math.PI * yearShare) + random.normal())
 }
 
 /**

@@ -1,5 +1,5 @@
 import wavefile from 'wavefile'
-import { type Air, type DrumModel, strikeAmplitudes, synthesise } from '../../shared/acoustics'
+import { type DrumModel, strikeAmplitudes, synthesise } from '../../shared/acoustics'
 import type { SeededRandom } from './random'
 
 export interface DemoTap {
@@ -8,7 +8,6 @@ export interface DemoTap {
   otherTensionNPerM?: number
   /** What the model cannot know of this drum: a factor on its air. */
   airScale: { axisymmetric: number, others: number }
-  air: Air
   /** Loss factor of the film, dimensionless. */
   filmLoss: number
   /** Place of the strike by radius. */
@@ -17,8 +16,8 @@ export interface DemoTap {
   split: number
 }
 
-const SAMPLE_RATE_HZ = 24_000
-const DURATION_S = 1.9
+const SAMPLE_RATE_HZ = 16_000
+const DURATION_S = 1.7
 const QUIET_S = 0.3
 /** Up to here modes are made: beyond, a tap of a soft stick has nothing left. */
 const HIGHEST_HZ = 2200
