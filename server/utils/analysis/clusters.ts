@@ -17,7 +17,10 @@ const MOST_TOGETHER = 4
 /** Tones whose flank reaches less than this share of a cluster's own peak are left out of its band. */
 const FARTHEST_SHARE = 1e-3
 
-/** Fits every tone again, neighbours together, all others taken off as they stand; one sweep in order of frequency. */
+/**
+ * Fits every tone again, neighbours together, all others taken off as they stand; one sweep in order of frequency.
+ * @param iterations  steps of each group's fit at most, a count
+ */
 export function sweep(ring: RingSpectrum, tones: FittedTone[], iterations: number): FittedTone[] {
   let all = [...tones].sort((a, b) => a.frequencyHz - b.frequencyHz)
   for (const members of groupTones(all)) {

@@ -87,7 +87,11 @@ export function subtractTone(grid: RingGrid, tone: DecayingTone, band: BinBand, 
   }
 }
 
-/** Subtracts tones from the sampled ring itself, in place. */
+/**
+ * Subtracts tones from the sampled ring itself, in place.
+ * @param ring          samples, in units of full scale
+ * @param sampleRateHz  Hz
+ */
 export function subtractFromRing(ring: Float64Array, sampleRateHz: number, tones: DecayingTone[]) {
   for (const tone of tones) {
     const r = Math.exp(-tone.gammaPerS / sampleRateHz)

@@ -29,6 +29,7 @@ const WORTH_WAITING = 0.04
 const NEEDED_S = 0.3
 const NEEDED_OVER_NOISE = 30
 
+/** Finds a tap's lines, from as late on as they need; see above. */
 export function hearTap(band: LowBand, tap: Tap, ring: CutRing = cutRing(band, tap)): HeardTap {
   const first = heardFrom(tap, ring, findLines(ring), 0)
   let best = first

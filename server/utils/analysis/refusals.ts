@@ -28,6 +28,7 @@ export function refuseEmpty(sound: MonoSound) {
   }
 }
 
+/** Refuses a recording in which nothing starts suddenly. */
 export function refuseNoTap(taps: Tap[]) {
   if (taps.length === 0) {
     throw new RefusalError('no-tap', 'No tap was found: nothing in the recording starts suddenly and dies away. Leave a moment of quiet, tap the head once, and let it ring.')
@@ -71,8 +72,10 @@ export function judgeClipping(found: ClippingFound): ReadingWarning[] {
   return [{ code: 'slightly-clipped', message: 'The loudest moment of the tap is clipped. The reading holds, but a lower gain would make it better.' }]
 }
 
+/** True where a ring lasts long enough for a reading, s. */
 export const longEnough = (ringS: number) => ringS >= SHORTEST_RING_S
 
+/** Refuses where even the longest ring, s, is cut off. */
 export function refuseShortRing(longestS: number) {
   if (!longEnough(longestS)) {
     throw new RefusalError('too-short', 'The ring of the tap is cut off. Let the head ring for at least a second before the recording ends or the next tap comes.')

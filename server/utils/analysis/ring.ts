@@ -59,6 +59,7 @@ function noiseOf(band: LowBand, tap: Tap): number {
   return Math.min(before, tail, 2 * quietest)
 }
 
+/** Mean square of samples from … to - 1 (indices), in units of full scale squared; 0 for none. */
 export function meanPower(samples: Float64Array, from: number, to: number): number {
   let sum = 0
   for (let n = from; n < to; n++) sum += samples[n]! ** 2
