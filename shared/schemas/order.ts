@@ -8,13 +8,13 @@ const specDiameterMm = z.number('Vibrating diameter is a number in mm.').min(75,
 const filmId = z.string('Choose a film.').min(1, 'Choose a film.').max(60)
 const countryCode = z.string('Choose a country.').trim().toUpperCase().regex(/^[A-Z]{2}$/, 'Use the two-letter country code (ISO 3166-1), like DE.')
 
-/** What the head shall sound like. `of`: its (0,1), or for a kettle the principal tone (1,1), which is what a player tunes by. */
+/** What the head shall sound like. `of`: its (0,1) where left out, or for a kettle the principal tone (1,1), which is what a player tunes by. */
 export const specTargetSchema = z.discriminatedUnion('kind', [
   z.object({
     kind: z.literal('pitch'),
     /** 20 Hz to 2 kHz: below and above the (0,1) of anything with rods. */
     hz: z.number('Pitch is a number in Hz.').min(20, 'Pitch is at least 20 Hz.').max(2000, 'Pitch is at most 2000 Hz.'),
-    of: z.enum(['fundamental', 'principal']).default('fundamental'),
+    of: z.enum(['fundamental', 'principal']).optional(),
   }),
   /** 50 N/m hangs loose; 20 kN/m is past any film's yield. */
   z.object({ kind: z.literal('tension'), nPerM: z.number('Tension is a number in N/m.').min(50, 'Tension is at least 50 N/m.').max(20_000, 'Tension is at most 20 000 N/m.') }),

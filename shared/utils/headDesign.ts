@@ -23,9 +23,9 @@ export interface DesignDrum {
   otherFilm?: Omit<DesignFilm, 'id' | 'name'>
 }
 
-/** The partial that a pitch names: (0,1), or on a kettle the principal tone (1,1). */
+/** The partial that a pitch names: (0,1) where left out, or on a kettle the principal tone (1,1). */
 export type DesignTone = 'fundamental' | 'principal'
-export type DesignTarget = { kind: 'pitch', hz: number, of: DesignTone } | { kind: 'tension', nPerM: number }
+export type DesignTarget = { kind: 'pitch', hz: number, of?: DesignTone } | { kind: 'tension', nPerM: number }
 
 export interface HeadPrediction {
   tensionNPerM: number
@@ -34,6 +34,10 @@ export interface HeadPrediction {
   stressMPa: number
   shareOfYield: number
   modes: { m: number, n: number, hz: number }[]
+}
+
+export function toneOf(target: DesignTarget): DesignTone {
+  return target.kind === 'pitch' ? target.of ?? 'fundamental' : 'fundamental'
 }
 
 /** Tension and pitch, of the tone asked for, between which a film serves on a drum. */

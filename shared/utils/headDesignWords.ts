@@ -1,6 +1,6 @@
 import { nearestNote } from '../acoustics'
 import {
-  createHeadDesign, SAFE_SHARE_OF_YIELD, type DesignDrum, type DesignFilm, type DesignTarget, type HeadDesign, type HeadPrediction,
+  createHeadDesign, SAFE_SHARE_OF_YIELD, toneOf, type DesignDrum, type DesignFilm, type DesignTarget, type HeadDesign, type HeadPrediction,
 } from './headDesign'
 
 export interface HeadVerdict {
@@ -33,8 +33,7 @@ const hzWords = (hz: number) => `${roundHz(hz)} Hz (${pitchWords(hz)})`
  * on this drum at a safe share of yield, and which film of the catalogue reaches what was wanted.
  */
 export function assessHead(drum: DesignDrum, film: DesignFilm, catalogue: readonly DesignFilm[], target: DesignTarget): AssessedHead {
-  const tone = target.kind === 'pitch' ? target.of : 'fundamental'
-  const design = createHeadDesign(drum, film, tone)
+  const design = createHeadDesign(drum, film, toneOf(target))
   const range = design.range()
   const predicted = predictOrNearest(design, target)
   const wantedHz = target.kind === 'pitch' ? target.hz : predicted.fundamentalHz
@@ -67,7 +66,7 @@ function findOtherFilm(drum: DesignDrum, film: DesignFilm, catalogue: readonly D
   let best: { film: DesignFilm, share: number } | undefined
   for (const candidate of catalogue) {
     if (candidate.id === film.id) continue
-    const design = createHeadDesign(drum, candidate, target.kind === 'pitch' ? target.of : 'fundamental')
+    const design = createHeadDesign(drum, candidate, toneOf(target))
     const { lowestHz, highestHz, lowestNPerM, highestNPerM } = design.range()
     const fits = target.kind === 'pitch' ? target.hz >= lowestHz && target.hz <= highestHz : target.nPerM >= lowestNPerM && target.nPerM <= highestNPerM
     if (!fits) continue

@@ -22,10 +22,11 @@ function drumOf(instrument: InstrumentView): DesignDrum {
 export async function useHeadDesign() {
   const design = useDesign()
   const { loggedIn, user } = useUserSession()
-  const [{ data: films, error: filmsError, refresh }, { data: instruments }] = await Promise.all([
-    useFetch<{ items: FilmView[] }>('/api/films', { key: 'design-films' }),
-    useFetch<InstrumentsPage>('/api/instruments', { key: 'design-instruments', query: { limit: 200 }, immediate: loggedIn.value && user.value?.role === 'customer' }),
-  ])
+  // Nothing is awaited before the end: hooks and watchers belong to the page only until then.
+  const filmsRequest = useFetch<{ items: FilmView[] }>('/api/films', { key: 'design-films' })
+  const instrumentsRequest = useFetch<InstrumentsPage>('/api/instruments', { key: 'design-instruments', query: { limit: 200 }, immediate: loggedIn.value && user.value?.role === 'customer' })
+  const { data: films, error: filmsError, refresh } = filmsRequest
+  const { data: instruments } = instrumentsRequest
   onMounted(design.restore)
 
   const catalogue = computed(() => films.value?.items ?? [])
@@ -54,12 +55,14 @@ export async function useHeadDesign() {
   const input = computed<PredictionInput | null>(() => drum.value && film.value && target.value ? { drum: drum.value, film: film.value, films: catalogue.value, target: target.value } : null)
   const { prediction, busy, failed } = useHeadPrediction(input)
 
-  const priced = refDebounced(computed(() => ({ filmId: film.value?.id, diameterMm: drum.value?.diameterMm, country: design.address.country })), 200)
-  const { data: quote, error: quoteError, status: quoteStatus, refresh: askQuote } = await useAsyncData('design-quote', async () => {
+  const priced = refDebounced(computed(() => ({ filmId: film.value?.id ?? design.entry.filmId, diameterMm: drum.value?.diameterMm, country: design.address.country })), 200)
+  const quoteRequest = useAsyncData('design-quote', async () => {
     const { filmId, diameterMm, country } = priced.value
     return filmId && diameterMm ? await $fetch<QuoteView>('/api/head-specs/quote', { query: { filmId, diameterMm, country } }) : null
   }, { watch: [priced] })
+  const { data: quote, error: quoteError, status: quoteStatus, refresh: askQuote } = quoteRequest
 
+  await Promise.all([filmsRequest, instrumentsRequest, quoteRequest])
   return {
     design, catalogue, film, filmsError, refresh, instruments, instrument, drum, tone, target, errors, input,
     prediction, predicting: busy, predictionFailed: failed, quote, quoteError, quoting: computed(() => quoteStatus.value === 'pending'), askQuote,
