@@ -15,7 +15,7 @@ const SCAN_STEP = { one: 0.005, two: 0.016 }
 const SCAN_RATIO_STEP = 0.14
 /** Two candidates nearer than this in ln T are one. */
 const SEPARATE = 0.012
-const MOST_CANDIDATES = 14
+const MOST_CANDIDATES = { one: 12, two: 24 }
 
 function read(track: ModeTrack, at: number, into: ScoredMode): boolean {
   const i = Math.min(Math.max(Math.floor(at), 0), track.lnFrequency.length - 2)
@@ -62,7 +62,7 @@ export function scanHypotheses(context: MatchingContext, input: ScoreInput): Can
       found.push({ lnTension, ratio, score: scoreHypothesis([...base, ...others, ...axisymmetric], input) })
     }
   }
-  return separate(found)
+  return separate(found, context.twoHeads ? MOST_CANDIDATES.two : MOST_CANDIDATES.one)
 }
 
 /** m = 0 of two heads between two knots of the ratio, straight in ln f. */
@@ -82,11 +82,11 @@ function betweenRatios(all: ModeTrack[][], ratios: number[], ratio: number, near
   return modes
 }
 
-function separate(found: Candidate[]): Candidate[] {
+function separate(found: Candidate[], most: number): Candidate[] {
   found.sort((a, b) => b.score - a.score)
   const kept: Candidate[] = []
   for (const candidate of found) {
-    if (kept.length >= MOST_CANDIDATES) break
+    if (kept.length >= most) break
     if (kept.some(k => Math.abs(k.lnTension - candidate.lnTension) < SEPARATE && Math.abs(k.ratio - candidate.ratio) < 0.15)) continue
     kept.push(candidate)
   }

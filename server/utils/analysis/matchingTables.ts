@@ -3,8 +3,10 @@ import type { MatchingContext } from './matchingContext'
 
 /** Knots of ln T: between them ln f is straight to a few parts in 10^5, away from resonances of the shell's air. */
 const KNOT_STEP = 0.12
-/** Two heads: knots of the ratio of tensions, and how far apart the two may be, as ln. */
-const RATIO_STEP = 0.2
+/** Two heads are searched with wider tolerances, so wider knots serve; and knots of the ratio of their tensions, ln. */
+const KNOT_STEP_TWO = 0.2
+const RATIO_STEP = 0.28
+/** How far apart the two heads' squared wave speeds may be, ln. */
 export const MOST_RATIO = 1.4
 const HIGHEST_M = 8
 
@@ -59,20 +61,21 @@ export function modeTables(context: MatchingContext, maxHz: number): ModeTables 
   const known = cache.get(context)
   if (known) return known
   const { model, lnTensionFrom, lnTensionTo, twoHeads, otherOffset } = context
-  const knots = Math.ceil((lnTensionTo - lnTensionFrom) / KNOT_STEP) + 1
-  const tension = (i: number) => Math.exp(lnTensionFrom + i * KNOT_STEP)
+  const step = twoHeads ? KNOT_STEP_TWO : KNOT_STEP
+  const knots = Math.ceil((lnTensionTo - lnTensionFrom) / step) + 1
+  const tension = (i: number) => Math.exp(lnTensionFrom + i * step)
   const orders = Array.from({ length: HIGHEST_M + 1 }, (_, m) => m)
   const at = (i: number, ratio: number, nodalDiameters: number[]) => model.predictModes({
-    tensionNPerM: tension(i), otherTensionNPerM: tension(i) * Math.exp(otherOffset + ratio), maxHz, nodalDiameters,
+    tensionNPerM: tension(i), otherTensionNPerM: tension(i) * Math.exp(otherOffset + ratio), maxHz, nodalDiameters, rough: true,
   })
-  const made: ModeTables = { from: lnTensionFrom, step: KNOT_STEP, knots, struck: [], other: [], axisymmetric: [], ratios: [] }
+  const made: ModeTables = { from: lnTensionFrom, step, knots, struck: [], other: [], axisymmetric: [], ratios: [] }
   if (!twoHeads) {
     made.struck = tracks(knots, i => at(i, 0, orders), () => true)
   } else {
     const upper = orders.slice(1)
     // Far apart in tension the two heads' modes hardly know of each other: take each head beside a slack partner.
     made.struck = tracks(knots, i => at(i, 0.7, upper), mode => mode.head === 'struck')
-    made.other = tracks(knots, i => model.predictModes({ tensionNPerM: tension(i) * Math.exp(0.7), otherTensionNPerM: tension(i) * Math.exp(otherOffset), maxHz, nodalDiameters: upper }), mode => mode.head === 'other')
+    made.other = tracks(knots, i => model.predictModes({ tensionNPerM: tension(i) * Math.exp(0.7), otherTensionNPerM: tension(i) * Math.exp(otherOffset), maxHz, nodalDiameters: upper, rough: true }), mode => mode.head === 'other')
     for (let ratio = -MOST_RATIO; ratio <= MOST_RATIO + 1e-9; ratio += RATIO_STEP) {
       made.ratios.push(ratio)
       made.axisymmetric.push(axisymmetricTracks(knots, i => at(i, ratio, [0])))
