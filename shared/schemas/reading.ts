@@ -109,7 +109,8 @@ export interface ReadingView {
   budget: { name: string, kind: 'A' | 'B', standardNPerM: number, share: number, source: string, repeatable: boolean }[]
   runnerUp: null | { tensionNPerM: number, fundamentalHz: number, odds: number }
   analysisVersion: string
-  filmStress: { mPa: number, shareOfYield: number }
+  /** Null where the head has had a new film since. */
+  filmStress: { mPa: number, shareOfYield: number } | null
   makerName: string | null
   sound: SoundView
   /** `audible`: the person asking may play it. */

@@ -40,7 +40,7 @@ export function toReadingView({ reading, recording, head, instrument, makerName 
     takenAt: reading.taken_at.toISOString(),
     strike: reading.strike,
     tension, fundamentalHz, confidence, doubtful, modes, taps, rim, warnings, unexplained, budget, runnerUp, analysisVersion,
-    filmStress: { mPa: stress.stressPa / 1e6, shareOfYield: stress.shareOfYield },
+    filmStress: reading.taken_at < head.film_since ? null : { mPa: stress.stressPa / 1e6, shareOfYield: stress.shareOfYield },
     makerName,
     sound: recording.sound as SoundView,
     recording: {
