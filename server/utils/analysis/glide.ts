@@ -8,6 +8,8 @@ const MOST_STEP_OF_TWO = 0.04
 /** Each line dies this much faster than the one below it. */
 const FASTER = 1.25
 const LOUD_DB = -22
+/** The flight holds at least this share of all lines' energy: in a hall, chance makes flights of ripples. */
+const MOST_OF_ENERGY = 0.5
 
 /**
  * Lines that are not modes but one mode gliding down: a loud stroke stretches the film, the pitch falls as the ring dies,
@@ -28,7 +30,13 @@ export function glideOf(findings: LineFindings): SpectralLine[] {
     }
     const strong = flight.some(l => l.levelDb > -3)
     const close = flight.length === 2 && flight[1]!.frequencyHz / flight[0]!.frequencyHz - 1 < MOST_STEP_OF_TWO
-    if (strong && (flight.length > 2 || close)) return flight
+    const share = energyOf(flight) / energyOf(findings.lines.filter(l => !l.steady))
+    if (strong && (flight.length > 2 || close) && share > MOST_OF_ENERGY) return flight
   }
   return []
+}
+
+/** Sum of amplitude^2 / gamma: the energy of decaying lines up to a factor, full scale squared times s. */
+function energyOf(lines: SpectralLine[]): number {
+  return lines.reduce((sum, l) => sum + l.amplitude ** 2 / Math.max(l.gammaPerS, 0.5), 0)
 }

@@ -21,10 +21,11 @@ export interface HeardTap {
  * they follow a glide: a hard stroke glides down in pitch, and a hall's first echoes are not the drum. What is left then
  * is the drum at rest.
  */
-const WELL_EXPLAINED = 0.85
+const WELL_EXPLAINED = 0.93
 const DELAYS_S = [0.1, 0.25, 0.5, 1]
-/** Later lines must explain this much more, or, where the earlier ones glide, at most this much less. */
-const WORTH_WAITING = 0.04
+/** Later lines must explain this much more; where the earlier ones glide, at most this much less; where they explain too little, any more. */
+const WORTH_WAITING = 0.03
+const TOO_LITTLE = 0.85
 /** Later listening needs this much ring, s, and this power over the noise. */
 const NEEDED_S = 0.3
 const NEEDED_OVER_NOISE = 30
@@ -40,7 +41,8 @@ export function hearTap(band: LowBand, tap: Tap, ring: CutRing = cutRing(band, t
     if (later.availableS < NEEDED_S || opening < NEEDED_OVER_NOISE * later.noisePower) break
     const heard = heardFrom(tap, ring, findLines(later), delayS)
     const gained = heard.findings.explainedShare - best.findings.explainedShare
-    if (gained > (best.glides ? -WORTH_WAITING : WORTH_WAITING)) best = heard
+    const needed = best.glides ? -WORTH_WAITING : best.findings.explainedShare < TOO_LITTLE ? 0 : WORTH_WAITING
+    if (gained > needed) best = heard
   }
   return { ...best, glideShare: first.glides ? glideShare(first.findings, best.findings) : 0 }
 }

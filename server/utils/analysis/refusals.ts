@@ -40,7 +40,8 @@ export interface ClippingFound { share: number, runs: number }
 /** Share of the first tenth of a second of the ring, and of its contact, that stands level at the recording's own rails. */
 export function clippingOf(sound: MonoSound, tap: Tap): ClippingFound {
   const { samples, sampleRateHz, rails } = sound
-  const from = Math.round(tap.atS * sampleRateHz)
+  // The onset is found in the low band; the stick's click, which clips first, may come a moment before.
+  const from = Math.round((tap.atS - 0.005) * sampleRateHz)
   const ringFrom = Math.round((tap.lastHitS + AFTER_ONSET_S) * sampleRateHz)
   const to = Math.min(samples.length, ringFrom + Math.round(CLIP_WINDOW_S * sampleRateHz))
   // Equal to within a 16 bit step: rails of a real converter or of a program are exact.
