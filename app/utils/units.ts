@@ -49,8 +49,9 @@ export function fromField(measure: Measure, unit: string, text: string): number 
   return value / perStored
 }
 
-export function formatLength(mm: number, units: Units): string {
-  return units === 'trade' ? withUnit(trimmed(mm / MM_PER_INCH, 2), 'in') : withUnit(fixed(mm), 'mm')
+/** @param decimals of inches: a bearing edge is known to 0.01 in, a shell's depth to 0.1 in */
+export function formatLength(mm: number, units: Units, decimals = 2): string {
+  return units === 'trade' ? withUnit(trimmed(mm / MM_PER_INCH, decimals), 'in') : withUnit(fixed(mm), 'mm')
 }
 
 export function formatThickness(um: number, units: Units): string {
