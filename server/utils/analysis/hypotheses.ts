@@ -12,7 +12,7 @@ export interface Candidate {
 }
 
 const SCAN_STEP = { one: 0.005, two: 0.016 }
-const SCAN_RATIO_STEP = 0.14
+const SCAN_RATIO_STEP = 0.1
 /** Two candidates nearer than this in ln T are one. */
 const SEPARATE = 0.012
 const MOST_CANDIDATES = { one: 12, two: 24 }

@@ -83,11 +83,17 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
       const air = track.m === 0 ? context.priors.airAxisymmetric : context.priors.airOthers
       return {
         m: track.m, n: track.n, other: track.other, placeDb, loudestDb: Math.max(...placeDb),
-        spread: Math.hypot(modeModelError(context.priors, track.m, track.n, false), Math.abs(track.airSensitivity) * 0.7 * air, context.twoHeads ? 0.005 : 0.002),
+        spread: Math.hypot(modeModelError(context.priors, track.m, track.n, false), Math.abs(track.airSensitivity) * 0.7 * air, gridSpread(context, track)),
         lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: NaN, used: 0,
       }
     },
   }
+}
+
+/** What the steps of the scan leave open, relative frequency: two heads are scanned in wider steps, of the other head's tension above all. */
+function gridSpread(context: MatchingContext, track: Pick<ModeTrack, 'm' | 'other'>): number {
+  if (!context.twoHeads) return 0.002
+  return track.m === 0 || track.other ? 0.01 : 0.005
 }
 
 /** Tables over ln f of what would otherwise be computed for every mode of every hypothesis. */

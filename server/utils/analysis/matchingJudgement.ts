@@ -14,7 +14,7 @@ const DIFFERENT = 0.012
 const SHOWN_ODDS = 200
 const DOUBTFUL_ODDS = 8
 const DOUBTFUL_SCATTER = 2
-const DOUBTFUL_UNEXPLAINED = 0.5
+const DOUBTFUL_EXPLAINED = 0.65
 const NEAR_YIELD = 0.8
 
 type Judged = Pick<Explanation, 'tension' | 'confidence' | 'doubtful' | 'budget' | 'runnerUp' | 'warnings'>
@@ -28,7 +28,7 @@ export function budgetAndConfidence(context: MatchingContext, fits: TensionFit[]
   const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > DIFFERENT)
   const odds = rival ? Math.exp(TEMPER * (best.score - rival.score)) : Infinity
   const few = trusted.length < 2
-  const poor = budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_UNEXPLAINED
+  const poor = budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_EXPLAINED
   const fitQuality = Math.min(1, explained / 0.9) * (few ? 0.5 : 1) * Math.min(1, 1.6 / Math.max(budget.scatter, 1e-3))
   const doubtful = few || poor || odds < DOUBTFUL_ODDS
   return {

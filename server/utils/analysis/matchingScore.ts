@@ -4,10 +4,10 @@ import type { ScoredLine, ScoredMode, ScoreInput } from './matchingInput'
 /** Lines that belong to nothing: this many per unit of ln f. */
 const STRAY_DENSITY = 1.2
 /** A loud stray is far less likely than a weak one: nats per dB above the quietest level that counts. */
-const LOUD_STRAY_PER_DB = 0.08
+const LOUD_STRAY_PER_DB = 0.12
 const QUIET_DB = -35
 /** Nats for all of the amplitude left unexplained. */
-const UNEXPLAINED_NATS = 14
+const UNEXPLAINED_NATS = 20
 /** A mode is not taken for a line farther off than this many standard deviations. */
 const FARTHEST = 3.2
 /** Nats that the second line of a pair costs: most pairs are heard as one line. */
