@@ -1,7 +1,7 @@
 import { subtractFromRing, type DecayingTone } from './decay'
 import { powerOf, ringWindow, spectrumOf } from './spectrum'
 
-export interface Candidate { frequencyHz: number, gammaPerS: number, power: number }
+export interface PeakCandidate { frequencyHz: number, gammaPerS: number, power: number }
 
 export interface Search {
   /** A peak on the flank of known lines must reach this share of their own amplitude there: the room's tail ripples below it. */
@@ -13,7 +13,7 @@ export interface Search {
 
 export interface SearchResult {
   /** Strongest first. */
-  candidates: Candidate[]
+  candidates: PeakCandidate[]
   /** Windowed power that a new line must exceed, per block of BLOCK_HZ from fromHz. */
   threshold: Float64Array
 }
@@ -65,7 +65,7 @@ function listen(ring: Float64Array, rest: Float64Array, search: Search, listenin
     .filter(peak => peak.power > threshold[blockOf(peak.frequencyHz, search, threshold.length)]! && peak.power > search.ripple ** 2 * flank[peak.bin]!)
     .sort((a, b) => b.power - a.power)
   const later = laterPower(rest, rate, window, listening.laterS)
-  const candidates: Candidate[] = []
+  const candidates: PeakCandidate[] = []
   for (const peak of peaks) {
     if (candidates.length >= most) break
     if (candidates.some(c => onFlank(peak, c, 1.5 / listening.lengthS))) continue
@@ -76,7 +76,7 @@ function listen(ring: Float64Array, rest: Float64Array, search: Search, listenin
 }
 
 /** True inside the width of a stronger candidate, or no higher than its flank: such a peak can wait until that is fitted. */
-function onFlank(peak: { frequencyHz: number, power: number }, stronger: Candidate, resolutionHz: number): boolean {
+function onFlank(peak: { frequencyHz: number, power: number }, stronger: PeakCandidate, resolutionHz: number): boolean {
   const halfWidth = Math.max(resolutionHz, stronger.gammaPerS / (2 * Math.PI))
   const widths = Math.abs(peak.frequencyHz - stronger.frequencyHz) / halfWidth
   return widths < 2 || peak.power < stronger.power / widths ** 2
