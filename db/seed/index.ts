@@ -49,9 +49,9 @@ export async function seedBench(bench: Bench, people: Map<string, SignedInUser>)
 
 function headHistories(drum: DemoDrum, view: InstrumentView): HeadHistory[] {
   const head = (side: 'batter' | 'resonant') => view.heads.find(candidate => candidate.side === side)!.id
-  const batter: HeadHistory = { headId: head('batter'), drum, wantedNPerM: drum.tensionNPerM, otherNPerM: drum.resonant?.tensionNPerM, visits: drum.owner ? 11 : 7 }
+  const batter: HeadHistory = { headId: head('batter'), drum, wantedNPerM: drum.tensionNPerM, otherNPerM: drum.resonant?.tensionNPerM, visits: drum.owner ? 7 : 4 }
   if (!drum.resonant) return [batter]
-  return [batter, { headId: head('resonant'), drum, wantedNPerM: drum.resonant.tensionNPerM, otherNPerM: drum.tensionNPerM, visits: 4 }]
+  return [batter, { headId: head('resonant'), drum, wantedNPerM: drum.resonant.tensionNPerM, otherNPerM: drum.tensionNPerM, visits: 2 }]
 }
 
 function toBody(drum: DemoDrum, films: Map<string, FilmRow>, people: Map<string, SignedInUser>): InstrumentBody {
