@@ -1,4 +1,4 @@
-import { nearestNote } from '../../shared/acoustics/notes'
+import { nearestNote } from '#shared/acoustics/notes'
 
 /** U+2009, between a figure and its unit. */
 export const THIN = '\u2009'

@@ -31,36 +31,55 @@ export function spectrumColumns(spectrum: Spectrum, fromHz: number, toHz: number
 }
 
 export interface Flag { key: string, x: number, peakY: number }
-export interface PlacedFlag extends Flag { labelY: number, anchor: 'start' | 'end' }
+/** Not labelled: there was no room; the pole still marks the peak. */
+export interface PlacedFlag extends Flag { labelY: number, anchor: 'start' | 'end', labelled: boolean }
 
-interface FlagRoom { labelWidth: number, lineHeight: number, topY: number, rightX: number, gap: number }
+export interface FlagRoom {
+  labelWidth: number
+  lineHeight: number
+  topY: number
+  rightX: number
+  gap: number
+  /** Highest point (smallest y) of the curve between two x. */
+  curveTopY: (left: number, right: number) => number
+}
+
+interface Span { left: number, right: number }
 
 /**
- * Flags stand on their peaks, lowest peaks placed first. A label hangs to the right of its pole, or to the left where that
- * is taken; where both lie on another label or across another pole, it climbs half a line at a time.
+ * Flags stand on their peaks, the strongest placed first. A label hangs to the right of its pole or to the left, clear of
+ * the curve, of other labels and of other poles; where it is not, it climbs half a line at a time, and goes without a
+ * label when it reaches the top.
  */
 export function placeFlags(flags: readonly Flag[], room: FlagRoom): PlacedFlag[] {
-  const placed: (PlacedFlag & { left: number, right: number })[] = []
-  const extent = (flag: Flag, anchor: 'start' | 'end') => anchor === 'start'
+  const placed: (PlacedFlag & Span)[] = []
+  const spanOf = (flag: Flag, anchor: 'start' | 'end'): Span => anchor === 'start'
     ? { left: flag.x - 2, right: flag.x + room.gap + room.labelWidth }
     : { left: flag.x - room.gap - room.labelWidth, right: flag.x + 2 }
-  const isFree = (flag: Flag, labelY: number, { left, right }: { left: number, right: number }) => right <= room.rightX && left >= 0
-    && placed.every((other) => {
-      const onLabel = Math.abs(other.labelY - labelY) < room.lineHeight && left < other.right && right > other.left
-      const onItsPole = other.x > left && other.x < right && labelY > other.labelY - room.lineHeight && labelY - room.lineHeight < other.peakY
-      const poleOnItsLabel = flag.x > other.left && flag.x < other.right && other.labelY > labelY && other.labelY - room.lineHeight < flag.peakY
-      return !onLabel && !onItsPole && !poleOnItsLabel
+  const barePoleTop = (flag: Flag) => flag.peakY - room.lineHeight * 1.6
+
+  const isFree = (flag: Flag, labelY: number, span: Span) => {
+    if (span.left < 0 || span.right > room.rightX || labelY > room.curveTopY(span.left, span.right) - 3) return false
+    return flags.every((other) => {
+      if (other.key === flag.key) return true
+      const done = placed.find(entry => entry.key === other.key)
+      const poleTop = done?.labelled ? done.labelY - room.lineHeight : barePoleTop(other)
+      const acrossItsPole = other.x > span.left && other.x < span.right && labelY > poleTop && labelY - room.lineHeight < other.peakY
+      if (acrossItsPole || !done?.labelled) return !acrossItsPole
+      const onItsLabel = Math.abs(done.labelY - labelY) < room.lineHeight && span.left < done.right && span.right > done.left
+      const poleThroughIt = flag.x > done.left && flag.x < done.right && done.labelY > labelY && done.labelY - room.lineHeight < flag.peakY
+      return !onItsLabel && !poleThroughIt
     })
-    // Nor across the poles of flags still to come, which start at their peaks.
-    && flags.every(other => other.key === flag.key || other.x < left || other.x > right || labelY < other.peakY - 2.6 * room.lineHeight || labelY - room.lineHeight > other.peakY)
-  for (const flag of [...flags].sort((a, b) => b.peakY - a.peakY || a.x - b.x)) {
+  }
+
+  for (const flag of [...flags].sort((a, b) => a.peakY - b.peakY || a.x - b.x)) {
     let best: { labelY: number, anchor: 'start' | 'end' } | undefined
-    for (let labelY = flag.peakY - room.lineHeight * 1.4; labelY > room.topY && !best; labelY -= room.lineHeight / 2) {
-      const anchor = (['start', 'end'] as const).find(side => isFree(flag, labelY, extent(flag, side)))
+    for (let labelY = flag.peakY - room.lineHeight * 0.9; labelY > room.topY && !best; labelY -= room.lineHeight / 2) {
+      const anchor = (['start', 'end'] as const).find(side => isFree(flag, labelY, spanOf(flag, side)))
       if (anchor) best = { labelY, anchor }
     }
-    const { labelY, anchor } = best ?? { labelY: room.topY, anchor: flag.x + room.labelWidth > room.rightX ? 'end' as const : 'start' as const }
-    placed.push({ ...flag, labelY, anchor, ...extent(flag, anchor) })
+    const { labelY, anchor } = best ?? { labelY: barePoleTop(flag) + 9, anchor: flag.x + room.labelWidth > room.rightX ? 'end' as const : 'start' as const }
+    placed.push({ ...flag, labelY, anchor, labelled: best !== undefined, ...spanOf(flag, anchor) })
   }
   return placed.map(({ left: _left, right: _right, ...flag }) => flag)
 }

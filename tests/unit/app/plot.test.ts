@@ -19,9 +19,10 @@ describe('the spectrum on the plate', () => {
   })
 
   it('keeps every label off the others and off their poles', () => {
-    const room = { labelWidth: 46, lineHeight: 16, topY: 12, rightX: 1200, gap: 5 }
+    const room = { labelWidth: 46, lineHeight: 16, topY: 12, rightX: 1200, gap: 5, curveTopY: () => 190 }
     const flags = [100, 132, 160, 420, 430, 900, 1180].map((x, index) => ({ key: String(index), x, peakY: 180 - 7 * (index % 3) }))
     const placed = placeFlags(flags, room)
+    expect(placed.every(flag => flag.labelled)).toBe(true)
     const box = (flag: typeof placed[number]) => ({
       left: flag.anchor === 'start' ? flag.x : flag.x - room.gap - room.labelWidth,
       right: flag.anchor === 'start' ? flag.x + room.gap + room.labelWidth : flag.x,
@@ -34,6 +35,19 @@ describe('the spectrum on the plate', () => {
         const crosses = b.x > p.left + 1 && b.x < p.right - 1 && b.labelY - 9 < p.bottom && b.peakY > p.top
         expect(crosses, `the pole of ${b.key} crosses the label of ${a.key}`).toBe(false)
       }
+    }
+  })
+
+  it('leaves a label out where there is no room, and never lays one on the curve', () => {
+    const curveTopY = (left: number, right: number) => left < 260 && right > 240 ? 40 : 190
+    const room = { labelWidth: 46, lineHeight: 16, topY: 12, rightX: 360, gap: 5, curveTopY }
+    const crowd = Array.from({ length: 30 }, (_, index) => ({ key: String(index), x: 20 + 11 * index, peakY: 180 }))
+    const placed = placeFlags(crowd, room)
+    expect(placed).toHaveLength(30)
+    expect(placed.some(flag => !flag.labelled)).toBe(true)
+    for (const flag of placed.filter(one => one.labelled)) {
+      const left = flag.anchor === 'start' ? flag.x : flag.x - 51
+      expect(flag.labelY).toBeLessThan(curveTopY(left, left + 51))
     }
   })
 })
