@@ -14,6 +14,10 @@ export default withNuxt(
     rules: { 'no-restricted-imports': ['error', { patterns: [{ regex: '^[^.]|/\\.\\./|^\\.\\.', message: 'shared/acoustics imports nothing but itself' }] }] },
   },
   {
+    files: ['app/**/*.{ts,vue}'],
+    rules: forbid([['**/shared/**'], 'name it #shared/…: the server build leaves shared/ out of its first stage, where a relative path no longer fits']),
+  },
+  {
     files: ['server/api/**/*.ts'],
     rules: forbid([['kysely', 'pg', 'stripe', '~~/db/*', '**/db/*'], 'routes hold no SQL and call no service: put it in server/utils']),
   },
