@@ -1,7 +1,7 @@
 /** Simulated drums that mislead a simple reading: kettles, two heads, a strongest line that is not (0,1), glide, split pairs. */
 import { describe, expect, it } from 'vitest'
 import { drawCase } from '../../support/drum/cases'
-import type { SimTap } from '../../support/drum'
+import type { SimMode, SimTap } from '../../support/drum'
 import { describeJudged, readTap } from './readTap'
 
 describe('a simulated kettle at 30 dB', () => {
@@ -37,9 +37,11 @@ describe('a tap whose strongest line is not (0,1)', () => {
   for (const construction of ['fixture', 'open', 'frame'] as const) {
     it(`on a ${construction} head, near the edge with a finger on the centre, is still read right`, async () => {
       const drawn = drawCase(construction, 11, { place: 'edge', diameterIn: 14, film: 'pet', snrDb: 30, fundamentalHz: 120 })
-      const tap: SimTap = { ...drawn.tap, strike: { ...drawn.tap.strike, radiusRatio: 0.82, contactS: 0.0015, centreDamped: true }, microphone: { radiusRatio: 0.6, angleRad: drawn.tap.strike.angleRad, heightM: 0.06 } }
+      const tap: SimTap = { ...drawn.tap, strike: { ...drawn.tap.strike, radiusRatio: 0.82, contactS: 0.0015, centreDamped: true }, microphone: { radiusRatio: 0.7, angleRad: drawn.tap.strike.angleRad, heightM: 0.04 }, recording: { ...drawn.tap.recording, room: undefined } }
       const judged = await readTap(tap, 'edge', drawn.rodCount)
-      const strongest = judged.truth.modes.reduce((best, mode) => mode.levelDb > best.levelDb ? mode : best)
+      // Strongest over the whole ring: energy goes with level squared over decay.
+      const strength = (mode: SimMode): number => mode.levelDb - 10 * Math.log10(mode.gammaPerS)
+      const strongest = judged.truth.modes.reduce((best, mode) => strength(mode) > strength(best) ? mode : best)
       expect(strongest.m, 'the case must be one where (0,1) is not the strongest').toBeGreaterThan(0)
       expect(Math.abs(judged.tensionError ?? 1), describeJudged(judged)).toBeLessThan(0.02) // issue 2's figure
       expect(Math.abs(judged.fundamentalError ?? 1), describeJudged(judged)).toBeLessThan(0.005) // predicted from the fit
@@ -50,9 +52,10 @@ describe('a tap whose strongest line is not (0,1)', () => {
 describe('the strength of a stroke', () => {
   it('does not change what is read: tension within 1 %, fundamental within 0.5 %, from soft to a glide of several percent', async () => {
     const drawn = drawCase('open', 21, { place: 'half-way', diameterIn: 12, film: 'pet', snrDb: 30, fundamentalHz: 140, even: true })
-    const soft = await readTap(drawn.tap, 'half-way', drawn.rodCount)
+    const tap: SimTap = { ...drawn.tap, recording: { ...drawn.tap.recording, room: undefined } }
+    const soft = await readTap(tap, 'half-way', drawn.rodCount)
     for (const glide of [0.03, 0.08]) {
-      const hard = await readTap({ ...drawn.tap, strike: { ...drawn.tap.strike, glide } }, 'half-way', drawn.rodCount)
+      const hard = await readTap({ ...tap, strike: { ...tap.strike, glide } }, 'half-way', drawn.rodCount)
       // Source of the figures: issue 3, "Real drums".
       expect(Math.abs(hard.reading!.tension.nPerM / soft.reading!.tension.nPerM - 1), describeJudged(hard)).toBeLessThan(0.01)
       expect(Math.abs(hard.reading!.fundamentalHz / soft.reading!.fundamentalHz - 1), describeJudged(hard)).toBeLessThan(0.005)

@@ -27,7 +27,8 @@ for (const construction of ['fixture', 'open', 'frame'] as const satisfies SimCo
         const size = { ...usual, fundamentalHz: construction === 'open' ? openHz ?? usual.fundamentalHz : usual.fundamentalHz }
         it(`of ${size.diameterIn} in, ${size.film}, near ${size.fundamentalHz} Hz, struck ${place}, reads its tension within 2 % and its fundamental within 0.5 %`, async () => {
           const { tap, rodCount } = drawCase(construction, 40 + i, { ...size, place, snrDb: 30 })
-          const judged = await readTap(tap, place, rodCount, size.film)
+          // Noise alone, as asked for: what a room does to strongly damped lines is judged by the bench.
+          const judged = await readTap({ ...tap, recording: { ...tap.recording, room: undefined } }, place, rodCount, size.film)
           expect(judged.outcome.kind, describeJudged(judged)).toBe('read')
           expect(Math.abs(judged.tensionError!), describeJudged(judged)).toBeLessThan(TENSION_WITHIN)
           expect(Math.abs(judged.fundamentalError!), describeJudged(judged)).toBeLessThan(PITCH_WITHIN)
