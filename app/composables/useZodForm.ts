@@ -1,4 +1,5 @@
 import type { z } from 'zod'
+import { plainErrors } from '#shared/schemas/plainErrors'
 import { type GenericObject, type TypedSchema, useForm } from 'vee-validate'
 
 /** vee-validate's own adapter knows zod 3 only; this is the same thing for zod 4. */
@@ -6,7 +7,7 @@ function toTypedSchema<Input extends GenericObject, Output extends GenericObject
   return {
     __type: 'VVTypedSchema',
     async parse(values) {
-      const result = await schema.safeParseAsync(values)
+      const result = await schema.safeParseAsync(values, { error: plainErrors })
       if (result.success) return { value: result.data, errors: [] }
       const byPath = new Map<string, string[]>()
       for (const issue of result.error.issues) {
