@@ -126,7 +126,9 @@ describe('changing an account', () => {
   it('leaves an owner when two owners remove each other at the same moment', async () => {
     const [one, two] = [await signInAs('owner'), await signInAs('owner')]
     const answers = await Promise.all([one.patch(`/api/people/${two.person.id}`, { role: 'staff' }), two.patch(`/api/people/${one.person.id}`, { role: 'staff' })])
-    expect(answers.map(answer => answer.status).toSorted()).toEqual([200, 403])
+    // The second is refused at the door (401, its session is gone) or behind it (403), as the moment falls.
+    expect(answers.filter(answer => answer.status === 200)).toHaveLength(1)
+    expect(answers.filter(answer => answer.status === 401 || answer.status === 403)).toHaveLength(1)
     const roles = [(await rowOf(one.person.id)).role, (await rowOf(two.person.id)).role]
     expect(roles.toSorted()).toEqual(['owner', 'staff'])
   })

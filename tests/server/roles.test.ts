@@ -34,7 +34,7 @@ const table: Record<string, Rule> = {
   'head-specs/index.post': { may: 'signed-in', answers: 400 },
   'head-specs/quote.get': { may: 'public', answers: 400 },
   'heads/[headId].patch': { may: bench, answers: 400 },
-  'heads/[headId]/recordings.post': { may: bench, answers: 415 },
+  'heads/[headId]/recordings.post': { may: bench, answers: 404 },
   'health.get': { may: 'public', answers: 200 },
   'instruments/[id].get': { may: 'signed-in', answers: 404 },
   'instruments/[id].patch': { may: bench, answers: 404 },
