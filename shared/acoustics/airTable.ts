@@ -15,6 +15,7 @@ export const KAPPA_STEP = 0.125
 export const KAPPA_MAX = 16
 export const KAPPA_ROWS = Math.round(KAPPA_MAX / KAPPA_STEP) + 1
 
+/** A table of zeros for that many shapes of one m: mass and loss as pure numbers, kappa0 from 0 to KAPPA_MAX. Source: definition. */
 export function emptyAirTable(shapeCount: number): AirTable {
   const width = shapeCount * (shapeCount + 1) / 2
   return { width, rows: KAPPA_ROWS, mass: new Float64Array(width * KAPPA_ROWS), loss: new Float64Array(width * KAPPA_ROWS) }
@@ -37,11 +38,16 @@ export interface AirStencil {
   slopes: Float64Array
 }
 
+/** A stencil to be placed; its weights and slopes are pure numbers. */
 export function newStencil(): AirStencil {
   return { row: 0, weights: new Float64Array(4), slopes: new Float64Array(4) }
 }
 
-/** Where kappa0 lies on the grid; beyond its end the last value is held. */
+/**
+ * Where kappa0 (omega R / c, a pure number, >= 0) lies on the grid; beyond its end the last value is held.
+ *
+ * Source: Lagrange's interpolation through four points (Abramowitz & Stegun, 25.2.13).
+ */
 export function placeStencil(kappa: number, stencil: AirStencil): void {
   const at = Math.min(Math.max(kappa, 0), KAPPA_MAX) / KAPPA_STEP
   const row = Math.min(Math.max(Math.floor(at) - 1, 0), KAPPA_ROWS - 4)
@@ -59,7 +65,7 @@ export function placeStencil(kappa: number, stencil: AirStencil): void {
   d[3] = (3 * t * t - 6 * t + 2) / (6 * KAPPA_STEP)
 }
 
-/** Value of one column through a stencil. @param values mass or loss of a table */
+/** Value of one column through a stencil, in the unit of the values. @param values mass or loss of a table, pure numbers. Source: as placeStencil. */
 export function readStencil(values: Float64Array, width: number, column: number, row: number, weights: Float64Array): number {
   const at = row * width + column
   return weights[0]! * values[at]! + weights[1]! * values[at + width]! + weights[2]! * values[at + 2 * width]! + weights[3]! * values[at + 3 * width]!

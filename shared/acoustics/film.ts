@@ -9,12 +9,12 @@ export function bendingStiffnessNm(film: HeadFilm): number {
   return film.plies * film.modulusPa * film.plyThicknessM ** 3 / (12 * (1 - film.poisson ** 2))
 }
 
-/** Thickness of all plies, m. A coating carries no tension and is left out. */
+/** Thickness of all plies, m. A coating carries no tension and is left out. Source: definition. */
 export function filmThicknessM(film: HeadFilm): number {
   return film.plies * film.plyThicknessM
 }
 
-/** Areal density of the bare film, kg/m2: plies * thickness * density. */
+/** Areal density of the bare film, kg/m2: plies * thickness * density. Source: definition. */
 export function bareArealDensityKgM2(film: Pick<HeadFilm, 'plies' | 'plyThicknessM' | 'filmDensityKgM3'>): number {
   return film.plies * film.plyThicknessM * film.filmDensityKgM3
 }
@@ -25,7 +25,7 @@ export interface FilmStress {
   shareOfYield: number
 }
 
-/** Stress T/h in the film and its share of yield. @param tensionNPerM T, N/m, >= 0 */
+/** Stress T/h in the film, Pa, and its share of yield. @param tensionNPerM T, N/m, >= 0. Source: definition of stress, force by section. */
 export function filmStress(film: HeadFilm, tensionNPerM: number): FilmStress {
   const stressPa = tensionNPerM / filmThicknessM(film)
   return { stressPa, shareOfYield: stressPa / film.yieldPa }

@@ -5,6 +5,7 @@
  *
  * A and b are overwritten; b then holds the solution. A pivot of zero is replaced by a tiny number, so that inverse
  * iteration may use a shift that is an eigenvalue to the last digit.
+ * All numbers are in whatever units A and b carry. Source: Gaussian elimination (Golub & Van Loan, Matrix Computations, ch. 3).
  * @param size  rows of A
  * @param a     A, row-major, size x size
  * @param b     right sides, row-major, size x columns

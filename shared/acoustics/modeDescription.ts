@@ -5,7 +5,7 @@ import type { PredictedMode } from './types'
 /** One solution of K x = omega^2 M x. */
 export interface EigenPair { omegaSquared: number, x: Float64Array }
 
-/** y^T A x for a row-major matrix. */
+/** y^T A x for a row-major matrix, in the units of its factors' product. Source: definition of a quadratic form. */
 export function quadratic(size: number, matrix: Float64Array, x: Float64Array, y: Float64Array): number {
   let sum = 0
   for (let i = 0; i < size; i++) {
@@ -50,7 +50,7 @@ function radiatingFrequency({ mass, massSlope, loss, lossSlope, coupled }: Radia
   return { real: Math.exp(re) * Math.cos(im), imaginary: Math.exp(re) * Math.sin(im) }
 }
 
-/** Areal density of the head that a shape belongs to, kg/m2. */
+/** Areal density of the head that a shape belongs to, kg/m2. Source: the drum model's own matrices. */
 export function headDensity(matrices: GroupMatrices, shape: number): number {
   return matrices.state.heads[shape < matrices.air.basis.count ? 0 : 1]!.film.arealDensityKgM2
 }
@@ -96,6 +96,7 @@ function overlap(matrices: GroupMatrices, x: Float64Array, y: Float64Array): num
 /**
  * All that is known of one mode: frequency with and without radiation, decay, added mass, shape, sensitivities.
  *
+ * Source: first-order change of an eigenvalue, d(omega^2) = x^T (dK - omega^2 dM) x (Rayleigh, The Theory of Sound, vol. 1, ch. 4).
  * @param pair    lossless angular frequency squared and shape, normalised to x^T M x = 1
  * @param shape   number of the shape that names the mode, heads one after the other
  * @param others  first guesses of all modes of the same m

@@ -61,6 +61,7 @@ export function patchFactor(ka: number): number {
 /**
  * Bessel weight of mode (m,n) for a blow at x0 = r0/R over a patch of radius a: J_m(alpha x0) * 2 J_1(alpha a/R)/(alpha a/R).
  *
+ * Source: patchFactor for the patch; Fletcher & Rossing, The Physics of Musical Instruments, ch. 3, for the mode shapes.
  * @param x0            place of the blow by radius, 0 to 1
  * @param contactRatio  a/R, >= 0
  */

@@ -25,6 +25,7 @@ export interface SynthesisOptions {
  *
  * Partials at or above half the sample rate are left out: they would fold down. Each partial runs as a complex rotation,
  * restarted every 4096 samples so that rounding does not build up.
+ * Source: superposition of free modes (Fletcher & Rossing, The Physics of Musical Instruments, ch. 1).
  * @throws RangeError when the rate or duration is not finite and positive
  */
 export function synthesise({ partials, sampleRateHz, durationS, startS = 0, attackS = 0 }: SynthesisOptions): Float32Array {

@@ -32,6 +32,7 @@ const PLACES: Record<Strike, Array<{ x: number, weight: number }>> = {
 
 export interface StrikePlace { x: number, logPrior: number }
 
+/** Places that a strike may have had, r/R (dimensionless, 0 to 1), with the natural logarithm of each one's prior share. */
 export function strikePlaces(strike: Strike): StrikePlace[] {
   const total = PLACES[strike].reduce((sum, place) => sum + place.weight, 0)
   return PLACES[strike].map(place => ({ x: place.x, logPrior: Math.log(place.weight / total) }))
