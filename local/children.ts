@@ -37,7 +37,7 @@ export function startChild(options: { name: string, args: string[], cwd: string,
 }
 
 /** Waits for a child's `{ ready: … }` message. */
-export function waitForReady<T>(child: Child, limitMs = 30_000): Promise<T> {
+export function waitForReady<T>(child: Child, limitMs = 120_000): Promise<T> {
   return new Promise((resolve, reject) => {
     const timer = setTimeout(() => reject(new Error(`${child.name} did not start within ${limitMs / 1000} s. Its log: ${child.logFile}`)), limitMs)
     child.process.on('message', (message: { ready?: T }) => {

@@ -31,7 +31,7 @@ export interface Cluster {
 }
 
 const NAME = 'rimwright'
-const START_LIMIT_S = 60
+const START_LIMIT_S = 120
 
 export async function startCluster(options: ClusterOptions): Promise<Cluster> {
   const data = join(options.home, 'data')

@@ -1,7 +1,8 @@
 import { lastLines } from './files'
 import type { Child } from './children'
 
-const LIMIT_MS = 60_000
+// A first start on a busy machine is slow; one that will never be healthy ends by itself long before.
+const LIMIT_MS = 180_000
 const PAUSE_MS = 100
 
 /** Waits until the app answers 200. @throws Error with the end of its log when it ends or never does */
