@@ -1,9 +1,11 @@
 // What tests of the bench bring along: an instrument, taps of the simulated drum, uploads.
+import { existsSync, readdirSync } from 'node:fs'
+import { join } from 'node:path'
 import type { InstrumentInput, InstrumentView } from '../../shared/schemas/instrument'
 import type { RecordingAnswer } from '../../shared/schemas/reading'
 import type { AnalysedReading } from '../../server/utils/analysis/types'
 import { type SimTap, simulateTap, writeWav16 } from './drum'
-import { type Answer, type Client, database } from './stack'
+import { type Answer, type Client, database, stack } from './stack'
 
 export const clearFilm = { material: 'pet', plies: 1, thicknessUm: 250, densityKgM3: 1390, modulusGPa: 4.5, poisson: 0.38, yieldMPa: 100 } as const
 
@@ -83,4 +85,12 @@ export async function arrangeReading(headId: string, instrumentId: string, tensi
     evenness_percent: detail.rim?.evennessPercent ?? null, confidence: 0.99, doubtful: detail.doubtful, detail: JSON.stringify(detail), analysis_version: 'test',
   }).returning('id').executeTakeFirstOrThrow()
   return id
+}
+
+/** Rows of one head and all files that the server keeps: what must not change when nothing is stored. */
+export async function kept(headId: string) {
+  const rows = await database().selectFrom('recordings').select('id').where('head_id', '=', headId).execute()
+  const readings = await database().selectFrom('readings').select('id').where('head_id', '=', headId).execute()
+  const list = (folder: string) => existsSync(join(stack.dataDir, folder)) ? readdirSync(join(stack.dataDir, folder), { recursive: true, withFileTypes: true }).filter(entry => entry.isFile()).length : 0
+  return { rows: rows.length, readings: readings.length, files: list('recordings'), unfinished: list('tmp') }
 }
