@@ -38,7 +38,7 @@ export function createDrumModel(options: DrumModelOptions): DrumModel {
   const fundamentalHz = (tensionNPerM: number, otherTensionNPerM?: number) => {
     const modes = predictModes({ tensionNPerM, otherTensionNPerM, nodalDiameters: [0] })
     // Of two heads moving together and against each other, the lower one is what the ear takes as the drum's note.
-    return modes.find(mode => mode.n === 1)!.frequencyHz
+    return modes[0]!.frequencyHz
   }
   return {
     options,

@@ -100,13 +100,20 @@ export function groupModes(air: GroupAir, state: GroupState, maxHz: number, roug
   return label(matrices, pairs, rough ? [] : starts).filter(mode => mode.frequencyHz <= maxHz)
 }
 
+/** A mode is not named after a shape that holds less than this of what its strongest shape holds. */
+const LEAST_CLAIM = 0.1
+
 /** Gives every shape of every head the mode that moves it most; the air's own modes stay unnamed and are left out. */
 function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[]): PredictedMode[] {
   const { shapes } = matrices
   const claims: Array<{ pair: EigenPair, shape: number, share: number }> = []
   for (const pair of pairs) {
     // By the film's own energy in that shape: where the shell's air takes part, the head's mode is the one that strains the film.
-    for (let i = 0; i < shapes; i++) claims.push({ pair, shape: i, share: pair.x[i]! ** 2 * matrices.headStiffness[i]! / pair.omegaSquared })
+    const shares = Array.from({ length: shapes }, (_, i) => pair.x[i]! ** 2 * matrices.headStiffness[i]! / pair.omegaSquared)
+    const most = Math.max(...shares)
+    shares.forEach((share, shape) => {
+      if (share > LEAST_CLAIM * most) claims.push({ pair, shape, share })
+    })
   }
   // Two like heads share each mode evenly: then the lower one is the struck head's.
   claims.sort((a, b) => Math.abs(a.share - b.share) > 1e-6 ? b.share - a.share : a.pair.omegaSquared - b.pair.omegaSquared || a.shape - b.shape)
@@ -114,7 +121,7 @@ function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[])
   const usedShapes = new Set<number>()
   const modes: PredictedMode[] = []
   for (const claim of claims) {
-    if (usedPairs.has(claim.pair) || usedShapes.has(claim.shape) || claim.share < 0.02) continue
+    if (usedPairs.has(claim.pair) || usedShapes.has(claim.shape)) continue
     usedPairs.add(claim.pair)
     usedShapes.add(claim.shape)
     modes.push(describeMode(matrices, claim.pair, claim.shape, starts))

@@ -114,7 +114,7 @@ export interface DrumModel {
   readonly options: Readonly<DrumModelOptions>
   /** Modes in order of frequency. @throws RangeError when a tension is not finite and positive */
   predictModes(options: PredictOptions): PredictedMode[]
-  /** Frequency of (0,1), Hz; of two heads, the lower of their two. */
+  /** Frequency of the lowest mode without nodal diameters, (0,1), Hz; of two heads, the lower of their two. */
   fundamentalHz(tensionNPerM: number, otherTensionNPerM?: number): number
   /** Tension of the struck head at which fundamentalHz gives this frequency, N/m. @throws RangeError when none does */
   tensionForFundamental(frequencyHz: number, otherTensionNPerM?: number): number

@@ -1,6 +1,7 @@
 import type { MatchingContext } from './matchingContext'
 import type { ScoredMode, ScoreInput } from './matchingInput'
-import { scoreHypothesis } from './matchingScore'
+import { assignLines, explainedShare, scoreHypothesis } from './matchingScore'
+import { RATIO_SPREAD } from './matchingPriors'
 import { MOST_RATIO, modeTables, type ModeTrack } from './matchingTables'
 
 /** A place in the space of tensions worth a closer look. */
@@ -13,6 +14,13 @@ export interface Candidate {
 
 const SCAN_STEP = { one: 0.005, two: 0.016 }
 const SCAN_RATIO_STEP = 0.1
+/** Share of what the best hypothesis explains below which one is not scored. */
+const HOPELESS = 0.5
+/** The loudest line lies at most this far above the head's lowest mode, as a ratio; the lowest loud line at most this far. */
+const LOUDEST_ABOVE_LOWEST = 12
+const LOW_ABOVE_LOWEST = 4.5
+/** The lowest mode may lie above the loudest line, when that is no tone of the head, by this ratio. */
+const LOWEST_ABOVE_LOUDEST = 1.9
 /** Two candidates nearer than this in ln T are one. */
 const SEPARATE = 0.012
 const MOST_CANDIDATES = { one: 12, two: 24 }
@@ -44,22 +52,31 @@ export function scanHypotheses(context: MatchingContext, input: ScoreInput): Can
     }
     return mode
   }
-  const loudest = Math.log(input.loudestHz)
+  let mostExplained = 0
+  const consider = (lnTension: number, ratio: number, modes: ScoredMode[]) => {
+    const assignment = assignLines(modes, input)
+    const explained = explainedShare(input, assignment)
+    mostExplained = Math.max(mostExplained, explained)
+    // Levels are the dear part of the score: a hypothesis that leaves the loud lines alone is not worth it.
+    if (explained < HOPELESS * mostExplained) return
+    found.push({ lnTension, ratio, score: scoreHypothesis(modes, input, assignment) - 0.5 * (ratio / RATIO_SPREAD) ** 2 })
+  }
+  const lowestFrom = Math.log(Math.max(input.loudestHz / LOUDEST_ABOVE_LOWEST, input.lowestLoudHz / LOW_ABOVE_LOWEST))
+  const lowestTo = Math.log(input.loudestHz * LOWEST_ABOVE_LOUDEST)
   for (let lnTension = context.lnTensionFrom; lnTension <= context.lnTensionTo; lnTension += step) {
     const at = (lnTension - tables.from) / tables.step
     const base = tables.struck.map(scored).filter((mode, i) => read(tables.struck[i]!, at, mode))
     const lowest = Math.min(...base.map(mode => mode.lnFrequency))
-    // The loudest line is one of the first dozen modes of the head, so the lowest mode is not below a sixth of it.
-    if (!(lowest > loudest - Math.log(7)) || lowest > loudest + Math.log(1.9)) continue
+    if (!(lowest > lowestFrom && lowest < lowestTo)) continue
     if (!context.twoHeads) {
-      found.push({ lnTension, ratio: 0, score: scoreHypothesis(base, input) })
+      consider(lnTension, 0, base)
       continue
     }
     for (let ratio = -MOST_RATIO; ratio <= MOST_RATIO + 1e-9; ratio += SCAN_RATIO_STEP) {
       const others = tables.other.map(scored).filter((mode, i) => read(tables.other[i]!, at + ratio / tables.step, mode))
       const r = Math.min(tables.ratios.length - 1, Math.round((ratio - tables.ratios[0]!) / (tables.ratios[1]! - tables.ratios[0]!)))
       const axisymmetric = betweenRatios(tables.axisymmetric, tables.ratios, ratio, r, at, scored)
-      found.push({ lnTension, ratio, score: scoreHypothesis([...base, ...others, ...axisymmetric], input) })
+      consider(lnTension, ratio, [...base, ...others, ...axisymmetric])
     }
   }
   return separate(found, context.twoHeads ? MOST_CANDIDATES.two : MOST_CANDIDATES.one)

@@ -9,8 +9,8 @@ import { fitTension, stateOf, type FitEffort, type TensionFit } from './tensionF
 
 /** Candidates that are fitted in full, and the effort of the first look and of the full fit. */
 const FINALISTS = 5
-const FIRST_LOOK: FitEffort = { predictions: 1, rounds: 3, widen: 1 }
-const FULL_FIT: FitEffort = { predictions: 4, rounds: 4, widen: 0.5 }
+const FIRST_LOOK: FitEffort = { predictions: 1, rounds: 3, widen: 1, rough: true }
+const FULL_FIT: FitEffort = { predictions: 4, rounds: 4, widen: 0.5, rough: false }
 /** Predictions reach this far above the highest line: modes that should be heard there count as missing. */
 const ABOVE_HIGHEST = 1.25
 

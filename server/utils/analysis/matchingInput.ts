@@ -43,6 +43,8 @@ export interface ScoreInput {
   places: StrikePlace[]
   maxHz: number
   loudestHz: number
+  /** The lowest of the lines within 20 dB of the loudest. */
+  lowestLoudHz: number
   /** Sets bandDb and floorDb from lnFrequency. */
   readBand: (mode: ScoredMode) => void
   describe: (track: Pick<ModeTrack, 'm' | 'n' | 'other' | 'airSensitivity'>) => ScoredMode
@@ -50,9 +52,11 @@ export interface ScoreInput {
 
 /** A width that is off by the room, the finger or a neighbour: share of the half-width that frequency may be off by. */
 const WIDTH_DOUBT = 0.06
+const LOUD_WITHIN_DB = 20
 const BAND_STEP = 0.01
 const HIGHEST_HZ = 3000
 
+/** What scoring a hypothesis needs of a recording's lines and of the drum: gathered once, levels in dB, frequencies in Hz. */
 export function scoreInput(context: MatchingContext, findings: LineFindings, request: ExplainRequest): ScoreInput {
   const decaying = findings.lines.filter(line => !line.steady && line.frequencyHz > 0)
   const amplitude = (line: SpectralLine) => 10 ** (line.levelDb / 20)
@@ -77,6 +81,7 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
     lines, places,
     maxHz: Math.min(findings.toHz, HIGHEST_HZ),
     loudestHz: lines[0]?.line.frequencyHz ?? 100,
+    lowestLoudHz: Math.min(...lines.filter(line => line.levelDb > (lines[0]?.levelDb ?? 0) - LOUD_WITHIN_DB).map(line => line.line.frequencyHz)),
     readBand: bandReader(findings),
     describe: (track) => {
       const placeDb = levelsOf(track.m, track.n, track.other)

@@ -26,9 +26,13 @@ const PRIORS: Record<Construction, ModelPriors> = {
   'double-headed': { airAxisymmetric: 0.08, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.003, othersError: 0.0012 },
 }
 
+/** How far the model may be off for this construction: standard deviations of natural logarithms, dimensionless. */
 export function modelPriors(construction: Construction): ModelPriors {
   return PRIORS[construction]
 }
+
+/** The other head's wave speed squared lies within this of the struck one's, ln, one standard deviation: a fourth either way. */
+export const RATIO_SPREAD = 0.5
 
 /** Standard deviation of N_2m / N_0 on a head that nobody calls uneven: 1.5 % swing at the rim, falling with the harmonic. */
 const HARMONIC_RATIO = 0.01

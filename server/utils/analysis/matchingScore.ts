@@ -15,7 +15,7 @@ const SECOND_LINE = 2.5
 /** How much a loud mode is preferred to a weak one that lies as near, nats per dB. */
 const LOUDER_PER_DB = 0.035
 /** Levels farther off than this many spreads count as this far: something else was at work. */
-const MOST_LEVEL_Z2 = 6
+const MOST_LEVEL_Z2 = 9
 
 /** For each line the mode that it is taken for, or -1. A mode with m >= 1 may have two lines. */
 export function assignLines(modes: ScoredMode[], input: ScoreInput): Int16Array {
@@ -46,16 +46,27 @@ export function assignLines(modes: ScoredMode[], input: ScoreInput): Int16Array 
   return assigned
 }
 
-/** ln of the chance that a mode is heard, and that it is not, by how far its expected level stands above the floor. */
+/** Chance that a mode is found as a line of its own, by how far its expected level stands above the floor. */
 const STEPS_PER_SPREAD = 32
 const REACH = 4
-const lnHeard = new Float64Array(2 * REACH * STEPS_PER_SPREAD + 1)
-const lnMissed = new Float64Array(lnHeard.length)
-for (let i = 0; i < lnHeard.length; i++) {
-  // A logistic follows the normal distribution to 0.01.
-  const heard = Math.max(0.02, 0.97 / (1 + Math.exp(-1.702 * (i / STEPS_PER_SPREAD - REACH))))
-  lnHeard[i] = Math.log(heard)
-  lnMissed[i] = Math.log(1 - heard)
+const aboveFloor = new Float64Array(2 * REACH * STEPS_PER_SPREAD + 1)
+// A logistic follows the normal distribution to 0.01.
+for (let i = 0; i < aboveFloor.length; i++) aboveFloor[i] = 1 / (1 + Math.exp(-1.702 * (i / STEPS_PER_SPREAD - REACH)))
+/** A weak mode may be missing for many reasons: hidden by a louder neighbour, on a node. A loud one may not. */
+const SURE = { loud: 0.985, loudDb: -8, weak: 0.35, weakDb: -32 }
+const LEAST_CHANCE = 0.02
+const LN_LEAST_MISSED = Math.log(1 - LEAST_CHANCE)
+
+function chanceHeard(expectedDb: number, floorDb: number): number {
+  const step = Math.round(((expectedDb - floorDb) / LEVEL_SPREAD_DB + REACH) * STEPS_PER_SPREAD)
+  const share = Math.min(1, Math.max(0, (expectedDb - SURE.weakDb) / (SURE.loudDb - SURE.weakDb)))
+  const sure = SURE.weak + (SURE.loud - SURE.weak) * share
+  return Math.max(LEAST_CHANCE, sure * aboveFloor[step < 0 ? 0 : step >= aboveFloor.length ? aboveFloor.length - 1 : step]!)
+}
+
+/** Share of the amplitude of all decaying lines that an assignment explains, 0 to 1. */
+export function explainedShare(input: ScoreInput, assignment: Int16Array): number {
+  return input.lines.reduce((sum, line, l) => sum + (assignment[l]! < 0 ? 0 : line.share), 0)
 }
 
 /**
@@ -124,14 +135,13 @@ function levelEvidence(modes: ScoredMode[], p: number): number {
   let sum = 0
   for (const mode of modes) {
     const expected = mode.placeDb[p]! + mode.bandDb + offset
-    const step = Math.round(((expected - mode.floorDb) / LEVEL_SPREAD_DB + REACH) * STEPS_PER_SPREAD)
-    const at = step < 0 ? 0 : step >= lnHeard.length ? lnHeard.length - 1 : step
+    const heard = chanceHeard(expected, mode.floorDb)
     if (Number.isNaN(mode.heardDb)) {
-      sum += lnMissed[at]!
+      sum += heard === LEAST_CHANCE ? LN_LEAST_MISSED : Math.log(1 - heard)
       continue
     }
     const z = (mode.heardDb - expected) / LEVEL_SPREAD_DB
-    sum += lnHeard[at]! - 0.5 * Math.min(z * z, MOST_LEVEL_Z2)
+    sum += Math.log(heard) - 0.5 * Math.min(z * z, MOST_LEVEL_Z2)
   }
   return sum
 }

@@ -1,7 +1,7 @@
 import type { PredictedMode } from '../../../shared/acoustics'
 import type { Candidate } from './hypotheses'
 import type { MatchingContext } from './matchingContext'
-import { modeModelError } from './matchingPriors'
+import { RATIO_SPREAD, modeModelError } from './matchingPriors'
 import type { ScoreInput, ScoredLine, ScoredMode } from './matchingInput'
 import { assignLines, scoreHypothesis } from './matchingScore'
 import { solveWeighted, type FitRow } from './tensionSolve'
@@ -44,8 +44,6 @@ export interface FitState {
 const HIGHEST_M = 8
 const ORDERS = Array.from({ length: HIGHEST_M + 1 }, (_, m) => m)
 const EDGE_MEAN = 0.5
-/** The other head's wave speed squared lies within this of the struck one's, ln, one standard deviation. */
-const RATIO_SPREAD = 0.7
 /** A residual beyond this many standard errors is more likely a wrong name than a bad prediction. */
 const OUTLIER_Z = 3.2
 /** Share of the scan's tolerance that always stays when lines are named. */
@@ -55,13 +53,14 @@ const CLOSE_ENOUGH = 0.002
 /** Largest step in one round, ln. */
 const MOST_STEP = { tension: 0.06, other: 0.25 }
 
+/** Start of a fit: natural logarithms of both heads' tensions in N/m as the candidate has them, air as predicted, the edge factor at its prior mean. */
 export function stateOf(context: MatchingContext, candidate: Candidate): FitState {
   return { lnTension: candidate.lnTension, lnOther: candidate.lnTension + context.otherOffset + candidate.ratio, lnAir: [0, 0], edge: EDGE_MEAN }
 }
 
-function predictAt(context: MatchingContext, state: FitState, maxHz: number): PredictedMode[] {
+function predictAt(context: MatchingContext, state: FitState, maxHz: number, rough: boolean): PredictedMode[] {
   return context.model.predictModes({
-    tensionNPerM: Math.exp(state.lnTension), otherTensionNPerM: Math.exp(state.lnOther), maxHz, nodalDiameters: ORDERS,
+    tensionNPerM: Math.exp(state.lnTension), otherTensionNPerM: Math.exp(state.lnOther), maxHz, nodalDiameters: ORDERS, rough,
     airScale: { axisymmetric: Math.exp(state.lnAir[0]), others: Math.exp(state.lnAir[1]) }, edgeFactor: state.edge,
   })
 }
@@ -134,6 +133,8 @@ export interface FitEffort {
   rounds: number
   /** Share of the scan's wide tolerance used when naming in the first round; it shrinks to the model's own. */
   widen: number
+  /** Predictions may be rough: for a first look. */
+  rough: boolean
 }
 
 /**
@@ -146,7 +147,7 @@ export function fitTension(context: MatchingContext, input: ScoreInput, start: F
   let widen = effort.widen
   for (let prediction = 0; prediction < effort.predictions; prediction++) {
     const origin = state
-    const predicted = predictAt(context, origin, input.maxHz)
+    const predicted = predictAt(context, origin, input.maxHz, effort.rough)
     modes = predicted
     for (let round = 0; round < effort.rounds; round++) {
       const scored = scoredModes(context, modes, input, widen)
