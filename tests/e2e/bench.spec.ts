@@ -3,16 +3,26 @@ import { expect, type Page, test } from './fixtures'
 
 const file = (buffer: Buffer, name: string) => ({ name, mimeType: 'audio/wav', buffer })
 
+/** Chooses a construction with one head; again where the page was not awake yet. */
+async function choose(page: Page, construction: 'open' | 'kettle') {
+  await expect(async () => {
+    await page.getByLabel('Construction').selectOption('double-headed')
+    await page.getByLabel('Construction').selectOption(construction)
+    await expect(page.getByLabel('Film', { exact: true })).toHaveCount(1, { timeout: 1000 })
+  }).toPass()
+}
+
 /** Registers the drum of tests/support/bench-drum.ts by its form, in trade units. */
 async function register(page: Page, name: string) {
   await page.goto('/instruments', { waitUntil: 'networkidle' })
   await page.getByRole('link', { name: 'Register an instrument' }).first().click()
-  await page.getByLabel('Construction').selectOption('open')
-  await expect(page.getByLabel('Rods on a head')).toHaveValue('8')
-  await page.getByLabel('Name').fill(name)
-  await page.getByLabel('Vibrating diameter').fill('13.75')
+  await expect(page).toHaveURL(/\/instruments\/new/)
+  await choose(page, 'open')
+  await expect(page.getByRole('textbox', { name: 'Rods on a head' })).toHaveValue('8')
+  await page.getByRole('textbox', { name: 'Name' }).fill(name)
+  await page.getByRole('textbox', { name: 'Vibrating diameter' }).fill('13.75')
   await page.getByRole('group', { name: 'Unit of shell depth' }).getByRole('button', { name: 'mm' }).click()
-  await page.getByLabel('Shell depth').fill(String(BENCH_DRUM.depthM * 1000))
+  await page.getByRole('textbox', { name: 'Shell depth' }).fill(String(BENCH_DRUM.depthM * 1000))
   await page.getByLabel('Film', { exact: true }).selectOption({ label: 'Clear 250, 9.8\u2009mil' })
   await page.getByRole('button', { name: 'Register' }).click()
   await expect(page.getByRole('heading', { level: 1, name })).toBeVisible()
@@ -48,7 +58,7 @@ test('a maker registers a drum, drops a tap, reads its tension, follows a turn s
   await page.reload()
   await expect(page.getByText('All rods are through.')).toBeVisible()
   await page.getByRole('button', { name: 'Save what was turned' }).click()
-  await expect(page.getByText(/^Turned on/)).toBeVisible()
+  await expect(page.getByText('Turned on ')).toBeVisible()
   await expect(page.getByRole('link', { name: 'Tap again' })).toBeVisible()
 
   await page.getByRole('link', { name: 'Tuning history' }).click()
@@ -76,25 +86,24 @@ test.describe('a recording that cannot be read', () => {
 
 test('the form says beside each field what is wrong and keeps what was typed', async ({ page }) => {
   await page.goto('/instruments/new', { waitUntil: 'networkidle' })
-  await page.getByLabel('Vibrating diameter').fill('-3')
-  await page.getByLabel('Rods on a head').fill('0')
+  await page.getByRole('textbox', { name: 'Vibrating diameter' }).fill('-3')
+  await page.getByRole('textbox', { name: 'Rods on a head' }).fill('0')
   await page.getByRole('button', { name: 'Register' }).click()
   await expect(page.getByText('Fill this in.')).toBeVisible()
   await expect(page.getByText('Vibrating diameter is at least 75 mm.')).toBeVisible()
   await expect(page.getByText('Rods is at least 3.')).toBeVisible()
-  await expect(page.getByLabel('Name')).toBeFocused()
-  await expect(page.getByLabel('Vibrating diameter')).toHaveValue('-3')
+  await expect(page.getByRole('textbox', { name: 'Name' })).toBeFocused()
+  await expect(page.getByRole('textbox', { name: 'Vibrating diameter' })).toHaveValue('-3')
 })
 
 test('choosing construction and size fills what was not typed', async ({ page }) => {
   await page.goto('/instruments/new', { waitUntil: 'networkidle' })
   await expect(page.getByRole('group', { name: 'Resonant head' })).toBeVisible()
-  await page.getByLabel('Construction').selectOption('kettle')
-  await expect(page.getByRole('group', { name: 'Resonant head' })).toBeHidden()
-  const before = Number(await page.getByLabel('Bowl volume').inputValue())
-  await page.getByLabel('Vibrating diameter').fill('31')
-  await expect.poll(async () => Number(await page.getByLabel('Bowl volume').inputValue())).toBeGreaterThan(before)
-  await page.getByLabel('Bowl volume').fill('140')
-  await page.getByLabel('Vibrating diameter').fill('25')
-  await expect(page.getByLabel('Bowl volume')).toHaveValue('140')
+  await choose(page, 'kettle')
+  const before = Number(await page.getByRole('textbox', { name: 'Bowl volume' }).inputValue())
+  await page.getByRole('textbox', { name: 'Vibrating diameter' }).fill('31')
+  await expect.poll(async () => Number(await page.getByRole('textbox', { name: 'Bowl volume' }).inputValue())).toBeGreaterThan(before)
+  await page.getByRole('textbox', { name: 'Bowl volume' }).fill('140')
+  await page.getByRole('textbox', { name: 'Vibrating diameter' }).fill('25')
+  await expect(page.getByRole('textbox', { name: 'Bowl volume' })).toHaveValue('140')
 })
