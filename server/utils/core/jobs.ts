@@ -9,8 +9,8 @@ import { settleOverdueCheckouts } from '../payments/sweep'
 
 /** Queues and what a job of each carries: ids only, never secrets; the worker reads the rest when it runs. */
 export interface Jobs {
-  mail: { kind: MailKind, id: string }
-  refund: { id: string }
+  'mail': { kind: MailKind, id: string }
+  'refund': { id: string }
   'sweep-checkouts': Record<string, never>
 }
 export type MailKind = 'confirm-email' | 'reset-password' | 'invitation' | 'order-receipt'
