@@ -47,6 +47,8 @@ export default defineNuxtConfig({
   typescript: {
     strict: true,
     nodeTsConfig: {
+      // Unit tests import what app/ computes, and app/ names shared/ this way.
+      compilerOptions: { paths: { '#shared/*': ['../shared/*'] } },
       include: ['../scripts/**/*', '../tests/**/*', '../build/**/*', '../db/**/*', '../local/**/*', '../shared/**/*', '../*.config.ts'],
       exclude: ['../tests/nuxt/**/*'],
     },

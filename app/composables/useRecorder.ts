@@ -54,7 +54,11 @@ export function useRecorder(taps: () => number, onComplete: (wav: Blob) => void)
 
   function take({ startFrame, samples }: { startFrame: number, samples: Float32Array }) {
     if (!gate) return
-    if (expectedFrame !== null && startFrame !== expectedFrame) return spoil('The sound had a gap, so the take was thrown away. Close other programs and record again.')
+    if (expectedFrame !== null && startFrame !== expectedFrame) {
+      if (gate.state === 'keeping') return spoil('The sound had a gap, so the take was thrown away. Close other programs and record again.')
+      // Nothing is kept yet: listening starts over behind the gap.
+      gate = new TapGate({ sampleRateHz: context!.sampleRate, taps: taps() })
+    }
     expectedFrame = startFrame + samples.length
     gate.push(samples)
     level.value = Math.max(gate.level, level.value * 0.9)

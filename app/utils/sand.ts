@@ -1,6 +1,6 @@
 import { quantile } from 'd3-array'
 import { besselJUpTo, besselZero } from '#shared/acoustics'
-import type { ModeView } from '~/utils/readingParts'
+import type { ModeView } from './readingParts'
 
 /** Side of the look-up of the membrane's motion; 160 columns keep a nodal line thinner than a grain at 320 px. */
 const GRID = 160

@@ -1,5 +1,5 @@
 import { max, min, range } from 'd3-array'
-import type { ModeView, SoundView } from '~/utils/readingParts'
+import type { ModeView, SoundView } from './readingParts'
 
 export interface Spectrum { fromHz: number, stepHz: number, levelDb: number[] }
 

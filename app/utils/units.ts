@@ -1,5 +1,7 @@
-import type { Units } from '~/stores/preferences'
 import { fixed, withUnit } from './figures'
+
+/** What a person chose to see (stores/preferences.ts). */
+export type Units = 'trade' | 'si'
 
 const MM_PER_INCH = 25.4
 const UM_PER_MIL = 25.4

@@ -1,5 +1,4 @@
-import type { Units } from '~/stores/preferences'
-import { formatThickness } from './units'
+import { formatThickness, type Units } from './units'
 
 /** Trade words for the values that the API keeps. */
 export const CONSTRUCTIONS = [

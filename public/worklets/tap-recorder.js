@@ -11,7 +11,11 @@ class TapRecorder extends AudioWorkletProcessor {
 
   process(inputs) {
     const channel = inputs[0] && inputs[0][0]
-    if (!channel) return true
+    if (!channel) {
+      // No sound came: what was begun is dropped, and the next block's place tells of the gap.
+      this.filled = 0
+      return true
+    }
     let offset = 0
     while (offset < channel.length) {
       if (this.filled === 0) this.startFrame = currentFrame + offset
