@@ -72,7 +72,7 @@ function hearTaps(request: AnalysisRequest, sound: MonoSound, band: LowBand, tap
   refuseOtherSounds(good.length, heard.length)
   if (good.some(h => h.tap.doubled)) warnings.push({ code: 'bounced', message: 'The stick or finger bounced. The reading is from after the last contact; a clean single tap is better.' })
   const [best] = good
-  if (best && best.glideShare > LOUD_GLIDE) warnings.push({ code: 'pitch-glide', message: `The stroke was loud enough to raise the pitch by ${(100 * best.glideShare).toFixed(0)} % at first; the tension is read ${best.delayS} s later, nearer to rest. Tap more softly.` })
+  if (best && best.glideShare > LOUD_GLIDE) warnings.push({ code: 'pitch-glide', message: `The stroke was loud enough to raise the pitch by ${(100 * best.glideShare).toFixed(0)} % at first; the tension is read ${best.delayS > 0 ? `${best.delayS} s later, nearer to rest` : 'at rest, with the rise taken off'}. Tap more softly.` })
   else if (best && best.delayS > 0) warnings.push({ code: 'heard-late', message: `The first ${best.delayS} s of the ring were left out: the room or the stroke was too loud there. Tap softly, with the microphone closer.` })
   return { heard: good, warnings }
 }

@@ -1,3 +1,4 @@
+import { linesAtRest } from './atRest'
 import type { LowBand } from './decimate'
 import { glideOf } from './glide'
 import { findLines, type LineFindings, type SpectralLine } from './lines'
@@ -30,10 +31,11 @@ const TOO_LITTLE = 0.85
 const NEEDED_S = 0.3
 const NEEDED_OVER_NOISE = 30
 
-/** Finds a tap's lines, from as late on as they need; see above. */
+/** Finds a tap's lines, from as late on as they need and with what glide is left there taken off; see above. */
 export function hearTap(band: LowBand, tap: Tap, ring: CutRing = cutRing(band, tap)): HeardTap {
   const first = heardFrom(tap, ring, findLines(ring), 0)
   let best = first
+  let bestRing = ring
   for (const delayS of DELAYS_S) {
     if (best.findings.explainedShare >= WELL_EXPLAINED && !best.glides) break
     const later = cutRing(band, { ...tap, lastHitS: tap.lastHitS + delayS })
@@ -42,9 +44,14 @@ export function hearTap(band: LowBand, tap: Tap, ring: CutRing = cutRing(band, t
     const heard = heardFrom(tap, ring, findLines(later), delayS)
     const gained = heard.findings.explainedShare - best.findings.explainedShare
     const needed = best.glides ? -WORTH_WAITING : best.findings.explainedShare < TOO_LITTLE ? 0 : WORTH_WAITING
-    if (gained > needed) best = heard
+    if (gained > needed) {
+      best = heard
+      bestRing = later
+    }
   }
-  return { ...best, glideShare: first.glides ? glideShare(first.findings, best.findings) : 0 }
+  const rest = linesAtRest(band, bestRing, best.findings)
+  const early = first.glides ? glideShare(first.findings, rest.findings) : 0
+  return { ...best, findings: rest.findings, glideShare: Math.max(early, rest.glideShare) }
 }
 
 function heardFrom(tap: Tap, ring: CutRing, findings: LineFindings, delayS: number): HeardTap & { glides: boolean } {

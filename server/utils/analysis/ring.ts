@@ -13,6 +13,8 @@ const BEFORE_NEXT_S = 0.005
 /** A ring and where it was taken from. */
 export interface CutRing extends Ring {
   startS: number
+  /** Index of its first sample in the band's. */
+  from: number
   /** Length that was there to take, before the quiet end was cut off, s. */
   availableS: number
 }
@@ -38,6 +40,7 @@ export function cutRing(band: LowBand, tap: Tap): CutRing {
     sampleRateHz: rate,
     passHz: band.passHz,
     noisePower,
+    from: start,
     startS: start / rate - (band.filterLength - 1) / 2 / inputRate,
     availableS,
   }
