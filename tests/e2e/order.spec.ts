@@ -68,7 +68,7 @@ test('a customer designs a head, pays for it and gets a receipt; staff moves it 
 
 test('what a visitor has entered stays through signing in', async ({ page }) => {
   await designD3(page)
-  await page.getByLabel('Note', { exact: true }).fill('E3')
+  await page.getByRole('textbox', { name: 'Note', exact: true }).fill('E3')
   await expect(page.getByRole('heading', { level: 1, name: 'A head that sounds E3' })).toBeVisible()
   await expect(page.getByText('This can be made.')).toBeVisible()
   await page.getByRole('button', { name: 'Order this head' }).click()
@@ -81,7 +81,7 @@ test('what a visitor has entered stays through signing in', async ({ page }) => 
 
 test('a pitch that this film cannot reach cannot be ordered, and the page names a film that can', async ({ page }) => {
   await designD3(page)
-  await page.getByLabel('Note', { exact: true }).fill('G4')
+  await page.getByRole('textbox', { name: 'Note', exact: true }).fill('G4')
   await expect(page.getByText(/Clear 250 reaches at most \d+ Hz/)).toBeVisible()
   await expect(page.getByRole('button', { name: 'Order this head' })).toBeDisabled()
   await page.getByRole('button', { name: 'Take Weir Weave 280' }).click()
