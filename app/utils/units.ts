@@ -1,7 +1,7 @@
 import { fixed, withUnit } from './figures'
 
 /** What a person chose to see (stores/preferences.ts). */
-export type Units = 'trade' | 'si'
+export type UnitSystem = 'trade' | 'si'
 
 const MM_PER_INCH = 25.4
 const UM_PER_MIL = 25.4
@@ -52,10 +52,10 @@ export function fromField(measure: Measure, unit: string, text: string): number 
 }
 
 /** @param decimals of inches: a bearing edge is known to 0.01 in, a shell's depth to 0.1 in */
-export function formatLength(mm: number, units: Units, decimals = 2): string {
+export function formatLength(mm: number, units: UnitSystem, decimals = 2): string {
   return units === 'trade' ? withUnit(trimmed(mm / MM_PER_INCH, decimals), 'in') : withUnit(fixed(mm), 'mm')
 }
 
-export function formatThickness(um: number, units: Units): string {
+export function formatThickness(um: number, units: UnitSystem): string {
   return units === 'trade' ? withUnit(trimmed(um / UM_PER_MIL, 1), 'mil') : withUnit(fixed(um), '\u00B5m')
 }

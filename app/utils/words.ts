@@ -1,4 +1,4 @@
-import { formatThickness, type Units } from './units'
+import { formatThickness, type UnitSystem } from './units'
 
 /** Trade words for the values that the API keeps. */
 export const CONSTRUCTIONS = [
@@ -22,7 +22,7 @@ export function constructionName(value: string): string {
 }
 
 /** 'PET, single ply, 250 um'. */
-export function filmName(film: { material: string, plies: number, thicknessUm: number }, units: Units): string {
+export function filmName(film: { material: string, plies: number, thicknessUm: number }, units: UnitSystem): string {
   const material = MATERIALS.find(entry => entry.value === film.material)?.label ?? film.material
   const plies = film.plies === 1 ? 'single ply' : film.plies === 2 ? 'two-ply' : `${film.plies} plies`
   return `${material}, ${plies}, ${film.plies > 1 ? `${film.plies}\u2009\u00D7\u2009` : ''}${formatThickness(film.thicknessUm, units)}`
