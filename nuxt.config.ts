@@ -49,7 +49,7 @@ export default defineNuxtConfig({
     nodeTsConfig: {
       // Unit tests import what app/ computes, and app/ names shared/ this way.
       compilerOptions: { paths: { '#shared/*': ['../shared/*'] } },
-      include: ['../scripts/**/*', '../tests/**/*', '../build/**/*', '../db/**/*', '../local/**/*', '../shared/**/*', '../*.config.ts'],
+      include: ['./types/nitro-imports.d.ts', '../scripts/**/*', '../tests/**/*', '../build/**/*', '../db/**/*', '../local/**/*', '../shared/**/*', '../*.config.ts'],
       exclude: ['../tests/nuxt/**/*'],
     },
   },

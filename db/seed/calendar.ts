@@ -27,7 +27,7 @@ export function visitsOf({ now, wantedNPerM, visits, yearlyLoss }: CalendarOptio
     const at = new Date(now.getTime() - daysAgo * DAY_MS)
     // Benches work from eight to six.
     at.setUTCHours(8 + Math.floor(random.uniform() * 10), Math.floor(random.uniform() * 60), Math.floor(random.uniform() * 60))
-    const retuned = !justTurned && Math.abs(share - 1) > 0.035
+    const retuned: boolean = !justTurned && Math.abs(share - 1) > 0.035
     list.push({ at, tensionNPerM: wantedNPerM * share, temperatureC: roomTemperatureC(at, random), retuned })
     const step = retuned ? random.between(0.01, 0.05) : gapDays * random.between(0.6, 1.4)
     share = retuned ? 1 + 0.006 * random.normal() : share - yearlyLoss * step / 365 + 0.002 * random.normal()
