@@ -1,7 +1,8 @@
 import { budgetAndConfidence } from './matchingJudgement'
 import type { ExplainLines, Explanation } from './explanation'
 import { scanHypotheses } from './hypotheses'
-import { matchingContext } from './matchingContext'
+import { matchingContext, type MatchingContext } from './matchingContext'
+import { namingPriors } from './matchingPriors'
 import { matchedModes, unexplainedPeaks } from './matchingReport'
 import { scoreInput, type ScoreInput } from './matchingInput'
 import { RefusalError } from './refusal'
@@ -11,6 +12,10 @@ import { fitTension, stateOf, type FitEffort, type TensionFit } from './tensionF
 const FINALISTS = 5
 const FIRST_LOOK: FitEffort = { predictions: 1, rounds: 3, widen: 1, rough: true }
 const FULL_FIT: FitEffort = { predictions: 4, rounds: 4, widen: 0.5, rough: false }
+const CLOSE_FIT: FitEffort = { predictions: 4, rounds: 4, widen: 1, rough: false }
+/** The tight priors hold when this share of what was named stays named, and the tension stays within this, ln. */
+const KEPT_SHARE = 0.9
+const SAME_HEAD = 0.06
 /** Predictions reach this far above the highest line: modes that should be heard there count as missing. */
 const ABOVE_HIGHEST = 1.25
 
@@ -22,12 +27,17 @@ const ABOVE_HIGHEST = 1.25
  */
 export const explainLines: ExplainLines = (findings, request): Explanation => {
   const context = matchingContext(request)
-  const input = scoreInput(context, findings, request)
+  const priors = namingPriors(context.construction)
+  const namingDiffers = priors !== context.priors
+  const naming = namingDiffers ? { ...context, priors } : context
+  const input = scoreInput(naming, findings, request)
   if (input.lines.length === 0) throw notADrum()
-  const fits = rankedFits(context, input)
-  const best = fits[0]
-  if (!best || best.matched.length === 0) throw notADrum()
-  const judged = budgetAndConfidence(context, fits, input, request)
+  const fits = rankedFits(context, naming, input)
+  const named = fits[0]
+  if (!named || named.matched.length === 0) throw notADrum()
+  const close = closeFit(context, fits, namingDiffers ? () => scoreInput(context, findings, request) : null)
+  const best = close ?? named
+  const judged = budgetAndConfidence({ context: close ? context : naming, fits: [best, ...fits.slice(1)], request, strained: !close })
   const lowest = best.modes.find(mode => mode.m === 0 && mode.n === 1)
   const heard = best.matched.find(match => match.mode === lowest && match.weight > 0.3)
   return {
@@ -38,10 +48,10 @@ export const explainLines: ExplainLines = (findings, request): Explanation => {
   }
 }
 
-function rankedFits(context: ReturnType<typeof matchingContext>, input: ScoreInput): TensionFit[] {
+function rankedFits(context: MatchingContext, naming: MatchingContext, input: ScoreInput): TensionFit[] {
   const highest = Math.max(...input.lines.map(line => line.line.frequencyHz))
   const near: ScoreInput = { ...input, maxHz: Math.min(input.maxHz, ABOVE_HIGHEST * highest) }
-  const first = scanHypotheses(context, input).map(candidate => fitTension(context, near, stateOf(context, candidate), FIRST_LOOK))
+  const first = scanHypotheses(context, input).map(candidate => fitTension(naming, near, stateOf(context, candidate), FIRST_LOOK))
   first.sort((a, b) => b.score - a.score)
   const finalists: TensionFit[] = []
   for (const fit of first) {
@@ -49,12 +59,33 @@ function rankedFits(context: ReturnType<typeof matchingContext>, input: ScoreInp
     if (finalists.some(other => samePlace(other, fit))) continue
     finalists.push(fit)
   }
-  const full = finalists.map(fit => fitTension(context, near, {
-    lnTension: Math.log(fit.tensionNPerM), lnOther: Math.log(fit.otherTensionNPerM),
-    lnAir: [Math.log(fit.airScale.axisymmetric), Math.log(fit.airScale.others)], edge: fit.edgeFactor,
-  }, FULL_FIT))
+  const full = finalists.map(fit => fitTension(naming, near, startAt(fit), FULL_FIT))
   full.sort((a, b) => b.score - a.score)
   return full
+}
+
+/**
+ * The fit of the best hypothesis by the tight priors, when they were not those of naming; null where what was named does
+ * not fit them: then the drum is not quite the stated one, and only the wide fit is honest.
+ */
+function closeFit(context: MatchingContext, fits: TensionFit[], tight: (() => ScoreInput) | null): TensionFit | null {
+  const named = fits[0]!
+  if (!tight) return named
+  const input = tight()
+  const held = fits.filter(fit => Math.abs(Math.log(fit.tensionNPerM / named.tensionNPerM)) < SAME_HEAD)
+    .map(fit => fitTension(context, input, startAt(fit), CLOSE_FIT))
+    .filter(fit => Math.abs(Math.log(fit.tensionNPerM / named.tensionNPerM)) < SAME_HEAD && trustedShare(fit) > KEPT_SHARE * trustedShare(named))
+    .sort((a, b) => b.score - a.score)
+  return held[0] ? { ...held[0], score: named.score } : null
+}
+
+const startAt = (fit: TensionFit) => ({
+  lnTension: Math.log(fit.tensionNPerM), lnOther: Math.log(fit.otherTensionNPerM),
+  lnAir: [Math.log(fit.airScale.axisymmetric), Math.log(fit.airScale.others)] as [number, number], edge: fit.edgeFactor,
+})
+
+function trustedShare(fit: TensionFit): number {
+  return fit.matched.reduce((sum, match) => sum + (match.weight > 0.3 ? match.lines.reduce((s, line) => s + line.share, 0) : 0), 0)
 }
 
 function samePlace(a: TensionFit, b: TensionFit): boolean {

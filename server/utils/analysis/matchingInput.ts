@@ -22,8 +22,9 @@ export interface ScoredMode {
   floorDb: number
   /** Level of the line taken for this mode, dB; NaN where none was. */
   heardDb: number
-  /** Lines taken for this mode so far. */
+  /** Lines taken for this mode so far, and ln f of the first. */
   used: number
+  firstLn: number
 }
 
 export interface ScoredLine {
@@ -35,6 +36,8 @@ export interface ScoredLine {
   levelDb: number
   /** Share of the amplitude of all decaying lines. */
   share: number
+  /** How much the line counts in naming: a weaker companion of a louder line is as often its other half as a mode. */
+  weight: number
 }
 
 export interface ScoreInput {
@@ -52,6 +55,9 @@ export interface ScoreInput {
 
 /** A width that is off by the room, the finger or a neighbour: share of the half-width that frequency may be off by. */
 const WIDTH_DOUBT = 0.06
+/** A line within this of a louder one, ln f, is its companion: the other half of an uneven pair, a beat, a player's loop. */
+const COMPANION = 0.035
+const COMPANION_WEIGHT = 0.4
 const LOUD_WITHIN_DB = 20
 const BAND_STEP = 0.01
 const HIGHEST_HZ = 3000
@@ -66,8 +72,11 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
   const lines = decaying.map((line) => {
     const undamped = Math.hypot(line.frequencyHz, line.gammaPerS / (2 * Math.PI))
     const doubt = WIDTH_DOUBT * line.gammaPerS / (2 * Math.PI)
-    return { line, lnFrequency: Math.log(undamped), spread: Math.hypot(line.standardErrorHz, doubt) / undamped, levelDb: line.levelDb, share: amplitude(line) / total }
+    return { line, lnFrequency: Math.log(undamped), spread: Math.hypot(line.standardErrorHz, doubt) / undamped, levelDb: line.levelDb, share: amplitude(line) / total, weight: 1 }
   }).sort((a, b) => b.levelDb - a.levelDb)
+  lines.forEach((line, l) => {
+    if (lines.some((louder, k) => k < l && Math.abs(louder.lnFrequency - line.lnFrequency) < COMPANION)) line.weight = COMPANION_WEIGHT
+  })
   const levels = new Map<string, Float64Array>()
   const levelsOf = (m: number, n: number, other: boolean) => {
     const name = `${m},${n},${other}`
@@ -89,7 +98,7 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
       return {
         m: track.m, n: track.n, other: track.other, placeDb, loudestDb: Math.max(...placeDb),
         spread: Math.hypot(modeModelError(context.priors, track.m, track.n, false), Math.abs(track.airSensitivity) * 0.7 * air, gridSpread(context, track)),
-        lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: NaN, used: 0,
+        lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: NaN, used: 0, firstLn: 0,
       }
     },
   }

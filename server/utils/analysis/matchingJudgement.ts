@@ -2,7 +2,7 @@ import { filmStress } from '../../../shared/acoustics'
 import { tensionBudget } from './budget'
 import type { Explanation, ExplainRequest } from './explanation'
 import type { MatchingContext } from './matchingContext'
-import type { ScoreInput } from './matchingInput'
+import { namingPriors } from './matchingPriors'
 import type { TensionFit } from './tensionFit'
 import type { ReadingWarning } from './types'
 
@@ -10,6 +10,8 @@ import type { ReadingWarning } from './types'
 const TEMPER = 0.5
 /** Another explanation counts as another one beyond this difference of tension, relative. */
 const DIFFERENT = 0.012
+/** Where the air is hardly known one naming spans as much tension as this share of the air's spread. */
+const LOOSE_AIR = 0.5
 /** Runner-up shown and reading doubtful when the odds are below these. */
 const SHOWN_ODDS = 200
 const DOUBTFUL_ODDS = 8
@@ -17,18 +19,28 @@ const DOUBTFUL_SCATTER = 2
 const DOUBTFUL_EXPLAINED = 0.65
 const NEAR_YIELD = 0.8
 
+interface ToJudge {
+  context: MatchingContext
+  /** Best first. */
+  fits: TensionFit[]
+  request: ExplainRequest
+  /** What was named does not fit the model as closely as it should. */
+  strained: boolean
+}
+
 type Judged = Pick<Explanation, 'tension' | 'confidence' | 'doubtful' | 'budget' | 'runnerUp' | 'warnings'>
 
 /** Tension with its budget, how far it can be trusted, and what to tell the maker. */
-export function budgetAndConfidence(context: MatchingContext, fits: TensionFit[], input: ScoreInput, request: ExplainRequest): Judged {
+export function budgetAndConfidence({ context, fits, request, strained }: ToJudge): Judged {
   const best = fits[0]!
   const budget = tensionBudget(context, best, request)
   const trusted = best.matched.filter(match => match.weight > 0.3)
   const explained = trusted.reduce((sum, match) => sum + match.lines.reduce((s, line) => s + line.share, 0), 0)
-  const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > DIFFERENT)
+  const different = Math.max(DIFFERENT, LOOSE_AIR * namingPriors(context.construction).airOthers)
+  const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > different)
   const odds = rival ? Math.exp(TEMPER * (best.score - rival.score)) : Infinity
   const few = trusted.length < 2
-  const poor = budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_EXPLAINED
+  const poor = strained || budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_EXPLAINED
   const fitQuality = Math.min(1, explained / 0.9) * (few ? 0.5 : 1) * Math.min(1, 1.6 / Math.max(budget.scatter, 1e-3))
   const doubtful = few || poor || odds < DOUBTFUL_ODDS
   return {

@@ -12,6 +12,8 @@ const UNEXPLAINED_NATS = 20
 const FARTHEST = 3.2
 /** Nats that the second line of a pair costs: most pairs are heard as one line. */
 const SECOND_LINE = 2.5
+/** Widest pair (1,1), ln: N_2 at 6 % of the mean; higher pairs split less. */
+const MOST_SPLIT = 0.032
 /** How much a loud mode is preferred to a weak one that lies as near, nats per dB. */
 const LOUDER_PER_DB = 0.035
 /** Levels farther off than this many spreads count as this far: something else was at work. */
@@ -31,7 +33,7 @@ export function assignLines(modes: ScoredMode[], input: ScoreInput): Int16Array 
       const off = Math.abs(line.lnFrequency - mode.lnFrequency)
       if (off > 0.15 || mode.used > 1 || (mode.used > 0 && mode.m === 0)) continue
       const spread = Math.sqrt(mode.spread * mode.spread + line.spread * line.spread)
-      const z = off / spread
+      const z = (mode.used ? offAsPair(line, mode) : off) / spread
       if (z > FARTHEST) continue
       const c = 0.5 * z * z + Math.log(spread) + (mode.used ? SECOND_LINE : 0) - LOUDER_PER_DB * mode.loudestDb
       if (c < cost) {
@@ -41,9 +43,15 @@ export function assignLines(modes: ScoredMode[], input: ScoreInput): Int16Array 
     }
     if (best < 0) continue
     assigned[l] = best
-    modes[best]!.used++
+    if (modes[best]!.used++ === 0) modes[best]!.firstLn = line.lnFrequency
   }
   return assigned
+}
+
+/** How far the mean of the two lines of a pair lies from its mode, ln; infinite where no head is as uneven as their distance. */
+function offAsPair(line: ScoredLine, mode: ScoredMode): number {
+  if (Math.abs(line.lnFrequency - mode.firstLn) > MOST_SPLIT / mode.m) return Infinity
+  return Math.abs(0.5 * (line.lnFrequency + mode.firstLn) - mode.lnFrequency)
 }
 
 /** Chance that a mode is found as a line of its own, by how far its expected level stands above the floor. */
@@ -54,6 +62,11 @@ const aboveFloor = new Float64Array(2 * REACH * STEPS_PER_SPREAD + 1)
 for (let i = 0; i < aboveFloor.length; i++) aboveFloor[i] = 1 / (1 + Math.exp(-1.702 * (i / STEPS_PER_SPREAD - REACH)))
 /** A weak mode may be missing for many reasons: hidden by a louder neighbour, on a node. A loud one may not. */
 const SURE = { loud: 0.985, loudDb: -8, weak: 0.35, weakDb: -32 }
+/** A mode expected to be about the loudest, and well above the floor, does not go missing: nats per dB beyond these. */
+const MISSED_FROM_DB = -6
+const MISSED_ABOVE_FLOOR_DB = 20
+const MISSED_PER_DB = 0.4
+const MOST_MISSED = 10
 const LEAST_CHANCE = 0.02
 const LN_LEAST_MISSED = Math.log(1 - LEAST_CHANCE)
 
@@ -87,15 +100,18 @@ export function scoreHypothesis(modes: ScoredMode[], input: ScoreInput, assignme
     const line = lines[l]!
     const k = assignment[l]!
     if (k < 0) {
-      unexplained += line.share
-      common -= LOUD_STRAY_PER_DB * Math.max(0, line.levelDb - QUIET_DB)
+      unexplained += line.weight * line.share
+      common -= line.weight * LOUD_STRAY_PER_DB * Math.max(0, line.levelDb - QUIET_DB)
       continue
     }
     const mode = modes[k]!
-    common += frequencyEvidence(line, mode)
     // Lines come loudest first: the second line of a pair says nothing more about the level.
-    if (Number.isNaN(mode.heardDb)) mode.heardDb = line.levelDb
-    else common -= SECOND_LINE
+    if (Number.isNaN(mode.heardDb)) {
+      common += line.weight * frequencyEvidence(line, mode)
+      mode.heardDb = line.levelDb
+    } else {
+      common -= line.weight * SECOND_LINE
+    }
   }
   common -= UNEXPLAINED_NATS * unexplained
   let best = -Infinity
@@ -138,6 +154,8 @@ function levelEvidence(modes: ScoredMode[], p: number): number {
     const heard = chanceHeard(expected, mode.floorDb)
     if (Number.isNaN(mode.heardDb)) {
       sum += heard === LEAST_CHANCE ? LN_LEAST_MISSED : Math.log(1 - heard)
+      const over = Math.min(expected, expected - mode.floorDb - MISSED_ABOVE_FLOOR_DB) - MISSED_FROM_DB
+      if (over > 0) sum -= Math.min(MOST_MISSED, MISSED_PER_DB * over)
       continue
     }
     const z = (mode.heardDb - expected) / LEVEL_SPREAD_DB
