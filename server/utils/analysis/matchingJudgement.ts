@@ -3,7 +3,7 @@ import { tensionBudget } from './budget'
 import type { Explanation, ExplainRequest } from './explanation'
 import type { MatchingContext } from './matchingContext'
 import { namingPriors } from './matchingPriors'
-import type { TensionFit } from './tensionFit'
+import type { MatchedLines, TensionFit } from './tensionFit'
 import type { ReadingWarning } from './types'
 
 /** Errors of neighbouring lines are not independent, so odds are tempered before they are believed. */
@@ -40,8 +40,9 @@ export function budgetAndConfidence({ context, fits, request, strained }: ToJudg
   const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > different)
   const odds = rival ? Math.exp(TEMPER * (best.score - rival.score)) : Infinity
   const few = trusted.length < 2
-  const poor = strained || budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_EXPLAINED
-  const fitQuality = Math.min(1, explained / 0.9) * (few ? 0.5 : 1) * Math.min(1, 1.6 / Math.max(budget.scatter, 1e-3))
+  const unsound = strained || lowestMissing(best, trusted, request)
+  const poor = unsound || budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_EXPLAINED
+  const fitQuality = Math.min(1, explained / 0.9) * (few || unsound ? 0.5 : 1) * Math.min(1, 1.6 / Math.max(budget.scatter, 1e-3))
   const doubtful = few || poor || odds < DOUBTFUL_ODDS
   return {
     tension: { nPerM: best.tensionNPerM, u95NPerM: budget.u95NPerM, repeatabilityU95NPerM: budget.repeatabilityU95NPerM },
@@ -53,6 +54,13 @@ export function budgetAndConfidence({ context, fits, request, strained }: ToJudg
       : null,
     warnings: warningsFor({ context, best, request, few, poor, close: odds < DOUBTFUL_ODDS ? rival : undefined, onlyAxisymmetric: trusted.every(match => match.mode.m === 0) }),
   }
+}
+
+/** A tap with nothing resting on the centre sounds the lowest (0,1); a bowl alone may swallow it. A reading without it stands on one leg. */
+function lowestMissing(best: TensionFit, trusted: MatchedLines[], request: ExplainRequest): boolean {
+  if (request.instrument.construction === 'kettle' || (request.centreDamped && request.strike !== 'centre')) return false
+  const lowest = best.modes.find(mode => mode.m === 0)
+  return lowest !== undefined && !trusted.some(match => match.mode === lowest)
 }
 
 interface WarningFacts {
