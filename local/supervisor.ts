@@ -73,7 +73,7 @@ class Run {
       mailInboxUrl: mail?.inboxUrl ?? choices.mailInboxUrl,
     })
     await writeLocalEnv(choices, settings)
-    await this.untilStopped(prepareDatabase({ root: this.root, databaseUrl, demo: choices.demo, env: { ...this.env, ...settings }, child: child => this.add(child) }))
+    await this.untilStopped(prepareDatabase({ root: this.root, databaseUrl, demo: choices.demo, env: { ...this.env, ...withPrefix(settings) }, child: child => this.add(child) }))
     const app = this.startApp(settings, port, choices.dataDir)
     await waitForHealth(`http://127.0.0.1:${port}/api/health`, app)
     if (this.stopping) return
@@ -128,8 +128,7 @@ class Run {
   }
 
   private startApp(settings: Record<string, string>, port: number, dataDir: string): Child {
-    const prefixed = Object.fromEntries(Object.entries(settings).map(([name, value]) => [`NUXT_${name}`, value]))
-    return this.startProgram('app', '.output/server/index.mjs', dataDir, { ...settings, ...prefixed, HOST: '127.0.0.1', PORT: String(port), NODE_ENV: 'production' })
+    return this.startProgram('app', '.output/server/index.mjs', dataDir, { ...withPrefix(settings), HOST: '127.0.0.1', PORT: String(port), NODE_ENV: 'production' })
   }
 
   private startProgram(name: string, file: string, dataDir: string, env: Record<string, string>): Child {
@@ -158,6 +157,11 @@ class Run {
     if (this.stopping) throw new Error('stopping')
     return result
   }
+}
+
+/** Plain names, as written in the README, and the framework's own (NUXT_SESSION_PASSWORD is read by a package of its). */
+function withPrefix(settings: Record<string, string>): Record<string, string> {
+  return { ...settings, ...Object.fromEntries(Object.entries(settings).map(([name, value]) => [`NUXT_${name}`, value])) }
 }
 
 async function lock(dataDir: string): Promise<void> {

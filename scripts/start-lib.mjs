@@ -1,6 +1,7 @@
 // What the start and test commands share before anything is installed, so: Node's own modules only.
 import { spawn } from 'node:child_process'
-import { existsSync, readdirSync, readFileSync } from 'node:fs'
+import { createHash } from 'node:crypto'
+import { existsSync, readdirSync, readFileSync, writeFileSync } from 'node:fs'
 import { dirname, join } from 'node:path'
 import { fileURLToPath } from 'node:url'
 
@@ -114,17 +115,28 @@ export async function ensureNodeModules() {
   // Development packages too, whatever NODE_ENV says: the build needs them.
   const code = await run('npm', ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], { limitMs: 20 * 60_000 })
   if (code !== 0) throw new Error('npm ci failed. The lines above say why.')
+  writeFileSync(installedStamp, lockHash())
 }
 
-/** npm writes node_modules/.package-lock.json last, so a broken-off install has none. */
+const installedStamp = join(root, 'node_modules/.installed-from')
+
+function lockHash() {
+  return createHash('sha256').update(readFileSync(join(root, 'package-lock.json'))).digest('hex')
+}
+
+/**
+ * By the stamp of our own npm ci, else (after an npm install by hand) by comparing what npm says is installed. npm writes
+ * node_modules/.package-lock.json last, so a broken-off install has none.
+ */
 function installedMatchesLock() {
+  if (existsSync(installedStamp) && readFileSync(installedStamp, 'utf8') === lockHash()) return true
   const installedFile = join(root, 'node_modules/.package-lock.json')
   if (!existsSync(installedFile)) return false
   const wanted = JSON.parse(readFileSync(join(root, 'package-lock.json'), 'utf8')).packages
   const installed = JSON.parse(readFileSync(installedFile, 'utf8')).packages
-  // Optional packages for other systems are in the lock and rightly not installed.
-  return Object.entries(wanted).every(([path, { version, optional, devOptional }]) =>
-    path === '' || optional || devOptional || installed[path]?.version === version)
+  // Optional packages for other systems are in the lock and rightly not installed, as are those that nothing needs.
+  return Object.entries(wanted).every(([path, { version, optional, devOptional, extraneous }]) =>
+    path === '' || optional || devOptional || extraneous || installed[path]?.version === version)
 }
 
 const OWN_SETTINGS = /^(PORT|HOST|NITRO_.*|NUXT_.*|DATABASE_URL|DATA_DIR|DEMO|PUBLIC_URL|STRIPE_.*|SMTP_URL|MAIL_.*|SESSION_PASSWORD|NODE_ENV|NODE_OPTIONS|VITEST.*|PG[A-Z]+)$/
