@@ -7,7 +7,7 @@ import { cleanEnv, root } from '../../scripts/start-lib.mjs'
 import { stack } from '../support/stack'
 
 // A database of its own: the shared one has owners that other tests made.
-describe('npm run owner:create', () => {
+describe('npm run owner:create', { timeout: 120_000 }, () => {
   const name = `owner_${randomUUID().slice(0, 8)}`
   const url = new URL(stack.databaseUrl)
   url.pathname = `/${name}`

@@ -43,7 +43,8 @@ async function settings(): Promise<Record<string, string>> {
 
 const answers = (url: string) => fetch(url, { signal: AbortSignal.timeout(2000) }).then(response => response.status, () => undefined)
 
-describe('the start command', () => {
+// Several starts in a test, each of some seconds on an idle machine.
+describe('the start command', { timeout: 180_000 }, () => {
   beforeAll(async () => {
     dataDir = await mkdtemp(join(tmpdir(), 'rimwright-start-'))
     await chmod(dataDir, 0o711)
