@@ -77,7 +77,8 @@ class Run {
     const app = this.startApp(settings, port, choices.dataDir)
     await waitForHealth(`http://127.0.0.1:${port}/api/health`, app)
     if (this.stopping) return
-    for (const child of this.children) void child.ended.then(how => this.onLoss(child, how))
+    // The demo's loader has ended by now, as it should.
+    for (const child of this.children.filter(child => child.isRunning())) void child.ended.then(how => this.onLoss(child, how))
     console.log(`Rimwright is ready at http://127.0.0.1:${port}`)
   }
 
