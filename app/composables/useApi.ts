@@ -4,7 +4,8 @@ export interface ApiProblem { status: number, message: string, issues: Record<st
 
 /** What went wrong, in words for the page; `issues` by field path. */
 export function describeProblem(error: unknown): ApiProblem {
-  if (error instanceof FetchError) {
+  // What the page's own data failed with while the server drew it arrives as Nuxt's error, with the same status and body.
+  if (error instanceof FetchError || isNuxtError(error)) {
     const body = error.data as { message?: string, data?: { issues?: { path: string, message: string }[] } } | undefined
     return {
       status: error.statusCode ?? 0,

@@ -43,28 +43,25 @@ test('every page is on the list of this test', () => {
   expect(files.toSorted()).toEqual(Object.keys(pages).toSorted())
 })
 
+// One test a page: loading it is the slow part, and each step names what it checks.
 for (const [name, { who, path }] of Object.entries(pages)) {
-  test.describe(`page ${name}`, () => {
-    test.beforeEach(async ({ page, signIn }) => {
-      if (who) await signIn(who)
-      await page.goto(typeof path === 'string' ? path : await path(page), { waitUntil: 'networkidle' })
-    })
-
+  test(`page ${name} passes axe for WCAG 2.2 AA in light and dark, has one title and first heading, and fits 320 px`, async ({ page, signIn }) => {
+    if (who) await signIn(who)
+    await page.emulateMedia({ reducedMotion: 'reduce' })
+    await page.goto(typeof path === 'string' ? path : await path(page), { waitUntil: 'networkidle' })
     for (const colorScheme of ['light', 'dark'] as const) {
-      test(`passes axe for WCAG 2.2 AA in ${colorScheme}`, async ({ page }) => {
-        await page.emulateMedia({ colorScheme, reducedMotion: 'reduce' })
+      await test.step(`axe in ${colorScheme}`, async () => {
+        await page.emulateMedia({ colorScheme })
         const { violations } = await new AxeBuilder({ page }).withTags(['wcag2a', 'wcag2aa', 'wcag21aa', 'wcag22aa']).analyze()
-        expect(violations.map(({ id, nodes }) => `${id}: ${nodes.map(node => `${node.target.join(' ')} (${node.failureSummary?.split('\n')[1]?.trim()})`).join('; ')}`)).toEqual([])
+        expect.soft(violations.map(({ id, nodes }) => `${id}: ${nodes.map(node => `${node.target.join(' ')} (${node.failureSummary?.split('\n')[1]?.trim()})`).join('; ')}`), colorScheme).toEqual([])
       })
     }
-
-    test('has one heading of the first level, a main part, and a title of its own', async ({ page }) => {
-      await expect(page.getByRole('heading', { level: 1 })).toHaveCount(1)
-      await expect(page.getByRole('main')).toHaveCount(1)
-      expect(await page.title()).toMatch(name === 'index' ? /Rimwright/ : /.+ · Rimwright$/)
+    await test.step('one title and one first heading', async () => {
+      expect.soft(await page.title()).toMatch(name === 'index' ? /Rimwright/ : /.+ · Rimwright$/)
+      await expect.soft(page.getByRole('heading', { level: 1 })).toHaveCount(1)
+      await expect.soft(page.getByRole('main')).toHaveCount(1)
     })
-
-    test('does not scroll sideways at 320 px', async ({ page }) => {
+    await test.step('no sideways scrolling at 320 px', async () => {
       await page.setViewportSize({ width: 320, height: 640 })
       // WCAG 2.2, 1.4.10: 320 CSS px without scrolling in two directions; tables may scroll in their own frame.
       await expect.poll(() => page.evaluate(() => document.documentElement.scrollWidth)).toBeLessThanOrEqual(320)

@@ -48,7 +48,7 @@ test.describe('an account', () => {
 })
 
 test.describe('a form', () => {
-  test.use({ allowedErrors: [/409/, /401/] })
+  test.use({ allowedErrors: [/409|401/] })
 
   test('keeps what was typed and says beside the field what is wrong', async ({ page }) => {
     await page.goto('/sign-up', { waitUntil: 'networkidle' })

@@ -14,11 +14,11 @@ test('staff search, filter, sort and page through all readings, and the address 
   const all = await total(page)
   const code = (await rows(page).first().getByRole('rowheader').innerText()).split(/\s/)[0]!
 
-  await page.getByLabel('Find').fill(code)
+  await page.getByRole('searchbox', { name: 'Find' }).fill(code)
   await expect(page).toHaveURL(new RegExp(`q=${code}`))
   await expect.poll(() => total(page)).toBeLessThan(all)
   for (const text of await rows(page).getByRole('rowheader').allInnerTexts()) expect(text).toContain(code)
-  await page.getByLabel('Find').fill('')
+  await page.getByRole('searchbox', { name: 'Find' }).fill('')
   await expect.poll(() => total(page)).toBe(all)
 
   await page.getByRole('button', { name: 'Filters' }).click()
@@ -90,11 +90,11 @@ test('chosen columns stay chosen', async ({ page }) => {
 })
 
 test('a search without a find says what to do, and leads back', async ({ page }) => {
-  await page.getByLabel('Find').fill('no such drum')
+  await page.getByRole('searchbox', { name: 'Find' }).fill('no such drum')
   await expect(page.getByText('No reading fits')).toBeVisible()
   await page.getByRole('button', { name: 'Show all readings' }).click()
   await expect(rows(page)).toHaveCount(50)
-  await expect(page.getByLabel('Find')).toHaveValue('')
+  await expect(page.getByRole('searchbox', { name: 'Find' })).toHaveValue('')
 })
 
 test.describe('a broken place in the list', () => {
