@@ -32,9 +32,9 @@ async function firstId(page: Page, api: string): Promise<string> {
 }
 
 async function newTurnSheet(page: Page): Promise<string> {
-  const readingId = await firstId(page, '/api/readings?doubtful=false')
-  const answer = await page.request.post('/api/turn-sheets', { data: { readingId, target: { kind: 'even' } } })
-  expect(answer.status()).toBe(201)
+  const { items: [reading] } = await (await page.request.get('/api/readings?doubtful=false&limit=1')).json() as { items: { id: string, tension: { nPerM: number } }[] }
+  const answer = await page.request.post('/api/turn-sheets', { data: { readingId: reading?.id, target: { kind: 'tension', nPerM: Math.round(reading!.tension.nPerM * 1.02) } } })
+  expect(answer.status(), await answer.text()).toBe(201)
   return `/turn-sheets/${(await answer.json() as { id: string }).id}`
 }
 
