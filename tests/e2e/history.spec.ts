@@ -22,7 +22,7 @@ test('staff search, filter, sort and page through all readings, and the address 
   await expect.poll(() => total(page)).toBe(all)
 
   await page.getByRole('button', { name: 'Filters' }).click()
-  await page.getByLabel('Construction').selectOption('kettle')
+  await page.getByRole('combobox', { name: 'Construction' }).selectOption('kettle')
   await expect(page).toHaveURL(/construction=kettle/)
   await expect.poll(() => total(page)).toBeLessThan(all)
 
