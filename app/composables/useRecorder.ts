@@ -49,7 +49,14 @@ export function useRecorder(taps: () => number, onComplete: (wav: Blob) => void)
       problem.value = 'No tap was heard, so nothing was kept. Tap a little harder or bring the microphone closer.'
       return
     }
-    onComplete(await encodeWav([samples], rate))
+    let wav: Blob
+    try {
+      wav = await encodeWav([samples], rate)
+    } catch {
+      problem.value = 'The take could not be turned into a WAV and was thrown away. Reload the page and record again.'
+      return
+    }
+    onComplete(wav)
   }
 
   function take({ startFrame, samples }: { startFrame: number, samples: Float32Array }) {

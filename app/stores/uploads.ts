@@ -63,7 +63,12 @@ export const useUploads = defineStore('uploads', () => {
       for (;;) {
         const item = items.value.find(entry => entry.state === 'waiting')
         if (!item) return
-        await send(item)
+        try {
+          await send(item)
+        } catch {
+          // Reading the file or turning it into WAV broke: the others still go on.
+          Object.assign(item, { state: 'failed', message: 'This file could not be read here. Choose it again, or save it as WAV first.' })
+        }
       }
     } finally {
       running = false
