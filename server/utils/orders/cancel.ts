@@ -15,21 +15,24 @@ import { planFullRefund, sendRefundsNow } from './refunds'
  */
 export async function cancelOrder(db: Kysely<DB>, user: SignedInUser, id: string, note: string | null): Promise<void> {
   const seen = await findOrder(db, user, id)
-  if (seen.status === 'awaiting-payment' && seen.checkout_session_id) {
+  const closesPage = seen.status === 'awaiting-payment' && seen.checkout_session_id !== null
+  if (closesPage) {
     requireCancellable(seen, user)
-    const session = await closeCheckout(seen.checkout_session_id)
+    const session = await closeCheckout(seen.checkout_session_id!)
     // Paid in this very moment: that comes first. The person asked to cancel an unpaid order, so they are asked again.
     if (session.payment_status === 'paid') {
       await db.transaction().execute(trx => settleSession(trx, session))
       throw new DomainError('move-not-allowed', 'The payment has just arrived. Cancel again, and it goes back to you.')
     }
   }
-  const refundIds = await db.transaction().execute(trx => cancelLocked(trx, user, id, note))
+  const refundIds = await db.transaction().execute(trx => cancelLocked(trx, user, id, note, closesPage))
   await sendRefundsNow(refundIds)
 }
 
-async function cancelLocked(trx: Transaction<DB>, user: SignedInUser, id: string, note: string | null): Promise<string[]> {
+async function cancelLocked(trx: Transaction<DB>, user: SignedInUser, id: string, note: string | null, closedHere: boolean): Promise<string[]> {
   const order = await lockOrder(trx, id)
+  // Closing the page makes the payment service say so; its word may have cancelled the order before us.
+  if (order.status === 'cancelled' && closedHere) return []
   await moveOrder(trx, order, 'cancelled', byPerson(user), note)
   await trx.updateTable('orders').set({ checkout_url: null }).where('id', '=', id).execute()
   return planFullRefund(trx, order, user, 'The order was cancelled before making started.')
