@@ -85,7 +85,7 @@ test('a forgotten password is set anew by mail', async ({ page, stack, signIn })
   await page.getByLabel('Name').fill('Second Maker')
   await page.getByRole('form', { name: 'Invitation' }).getByLabel('E-mail').fill(email)
   await page.getByRole('form', { name: 'Invitation' }).getByLabel('Role').selectOption('maker')
-  await page.getByRole('button', { name: 'Send the invitation' }).click()
+  await page.getByRole('button', { name: 'Send the invitation', exact: true }).click()
   await expect(page.getByText(`A letter is on its way to ${email}`)).toBeVisible()
   await page.request.post('/api/auth/sign-out')
 
@@ -136,16 +136,17 @@ test.describe('signing out everywhere', () => {
 })
 
 test('an owner closes an account and opens it again', async ({ page, signIn, stack }) => {
-  const email = `closed-${randomUUID().slice(0, 8)}@rimwright.test`
+  const name = `Closed ${randomUUID().slice(0, 8)}`
+  const email = `${name.replace(' ', '-').toLowerCase()}@rimwright.test`
   await signIn('owner')
-  await page.request.post('/api/people/invitations', { data: { name: 'Soon Closed', email, role: 'staff' } })
+  await page.request.post('/api/people/invitations', { data: { name, email, role: 'staff' } })
   await letterTo(stack, email, 'You are invited to Rimwright')
   await page.goto('/people', { waitUntil: 'networkidle' })
   await page.getByLabel('Find').fill(email)
-  await page.getByRole('button', { name: 'Change the account of Soon Closed' }).click()
+  await page.getByRole('button', { name: `Change the account of ${name}` }).click()
   await page.getByRole('button', { name: 'Close the account' }).click()
   await expect(page.getByText('account closed')).toBeVisible()
-  await page.getByRole('button', { name: 'Change the account of Soon Closed' }).click()
+  await page.getByRole('button', { name: `Change the account of ${name}` }).click()
   await page.getByRole('button', { name: 'Open the account again' }).click()
   await expect(page.getByText('account closed')).toHaveCount(0)
 })
