@@ -1,6 +1,7 @@
 import type { ReadingView } from '#shared/schemas/reading'
 
-export type { ReadingView, SoundView } from '#shared/schemas/reading'
+export type { ReadingView } from '#shared/schemas/reading'
+export type { SoundFacts } from '#shared/types/reading'
 /** Parts of a reading that figures and tables take. */
 export type ModeView = ReadingView['modes'][number]
 export type PeakView = ReadingView['unexplained'][number]

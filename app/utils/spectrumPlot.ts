@@ -1,10 +1,10 @@
 import { max, min, range } from 'd3-array'
-import type { ModeView, SoundView } from './readingParts'
+import type { ModeView, SoundFacts } from './readingParts'
 
 export interface Spectrum { fromHz: number, stepHz: number, levelDb: number[] }
 
 /** The part of the spectrum worth drawing: all matched modes with room for their flags on both sides. */
-export function spectrumRange(modes: readonly ModeView[], spectrum: NonNullable<SoundView['spectrum']>): { fromHz: number, toHz: number } {
+export function spectrumRange(modes: readonly ModeView[], spectrum: NonNullable<SoundFacts['spectrum']>): { fromHz: number, toHz: number } {
   const endHz = spectrum.fromHz + spectrum.stepHz * (spectrum.levelDb.length - 1)
   const low = min(modes, mode => Math.min(mode.measuredHz, mode.predictedHz))
   const high = max(modes, mode => Math.max(mode.measuredHz, mode.predictedHz))

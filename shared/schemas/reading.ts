@@ -1,5 +1,6 @@
 import { z } from 'zod'
 import { idSchema, limitSchema, noteSchema, numeric } from './common'
+import type { AnalysedReading, Refusal, SoundFacts } from '../types/reading'
 
 export const strikeSchema = z.enum(['centre', 'edge', 'round'], 'strike is centre, edge or round.')
 
@@ -47,20 +48,6 @@ export const readingsQuery = z.object({
 })
 export type ReadingsQuery = z.infer<typeof readingsQuery>
 
-export type RefusalCode = 'silent' | 'clipped' | 'too-short' | 'low-rate' | 'no-tap' | 'not-a-drum' | 'not-wav' | 'too-large'
-
-export interface SoundView {
-  durationS: number
-  sampleRateHz: number
-  channels: number
-  bitDepth: string
-  peakDbfs: number
-  /** Pairs min, max a column over the whole recording, -1 to 1. */
-  waveform: { columns: number, minMax: number[] }
-  /** dB below the strongest, on an even frequency grid, of the tap that was read. */
-  spectrum: null | { fromHz: number, stepHz: number, levelDb: number[] }
-}
-
 export interface RecordingView {
   id: string
   headId: string
@@ -74,45 +61,21 @@ export interface RecordingView {
   privateToMaker: boolean
   recordedAt: string
   byteCount: number
-  sound: SoundView
-  refusal: { code: RefusalCode, message: string } | null
+  sound: SoundFacts
+  refusal: Refusal | null
 }
 
 /** One reading, whole. */
-export interface ReadingView {
+export interface ReadingView extends AnalysedReading {
   id: string
   headId: string
   instrumentId: string
   takenAt: string
   strike: z.infer<typeof strikeSchema>
-  tension: { nPerM: number, u95NPerM: number, repeatabilityU95NPerM: number }
-  fundamentalHz: number
-  confidence: number
-  doubtful: boolean
-  modes: {
-    m: number
-    n: number
-    measuredHz: number
-    u95Hz: number
-    predictedHz: number
-    levelDb: number
-    t60S: number
-    /** Both lines of a split pair, low one first. */
-    splitHz?: [number, number]
-    /** The line belongs to the head that was not struck. */
-    head?: 'other'
-  }[]
-  taps: { atS: number, rod: number | null }[]
-  rim: null | { evennessPercent: number, rods: { rod: number, nPerM: number, u95NPerM: number, deviationPercent: number }[] }
-  warnings: { code: string, message: string }[]
-  unexplained: { frequencyHz: number, levelDb: number, t60S: number, cause?: string }[]
-  budget: { name: string, kind: 'A' | 'B', standardNPerM: number, share: number, source: string, repeatable: boolean }[]
-  runnerUp: null | { tensionNPerM: number, fundamentalHz: number, odds: number }
-  analysisVersion: string
   /** Null where the head has had a new film since. */
   filmStress: { mPa: number, shareOfYield: number } | null
   makerName: string | null
-  sound: SoundView
+  sound: SoundFacts
   /** `audible`: the person asking may play it. */
   recording: { id: string, note: string | null, strike: z.infer<typeof strikeSchema>, rod: number | null, firstRod: number, centreDamped: boolean, temperatureC: number, audible: boolean }
   head: { id: string, side: 'batter' | 'resonant', filmId: string | null, coating: string | null }
@@ -120,7 +83,7 @@ export interface ReadingView {
 }
 
 /** A file that could not be read at all: nothing of it was stored. */
-export interface UnreadRecordingView { id: null, headId: string, instrumentId: string, refusal: { code: RefusalCode, message: string } }
+export interface UnreadRecordingView { id: null, headId: string, instrumentId: string, refusal: Refusal }
 
 /** The answer to an uploaded recording: 201 with a reading, 422 with a refusal and no reading. */
 export interface RecordingAnswer { recording: RecordingView | UnreadRecordingView, reading: ReadingView | null }

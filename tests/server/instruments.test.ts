@@ -121,6 +121,10 @@ describe('whose instruments are seen', () => {
     expect(seen).toEqual(made.reverse())
   })
 
+  it('searches for a text with a NUL in it, which PostgreSQL refuses in a parameter', async () => {
+    expect((await maker.get('/api/instruments?q=%00')).status).toBe(200)
+  })
+
   it('refuses a cursor that it did not give out, and a limit past 200', async () => {
     expect((await maker.get('/api/instruments?cursor=abc')).status).toBe(400)
     expect((await maker.get('/api/instruments?limit=201')).status).toBe(400)

@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { DomainError } from '../core/errors'
+import { decodeCursor, encodeCursor, TIMESTAMP_TEXT } from '../core/cursor'
 import type { ReadingSort } from './sorts'
 
 /* A cursor names a row by its sort key as PostgreSQL writes it (a Date would lose its microseconds) and says where to go from there. */
@@ -14,26 +14,20 @@ const cursorSchema = z.object({
 export type HistoryCursor = z.infer<typeof cursorSchema>
 
 const texts = {
-  timestamptz: /^\d{4,6}-\d\d-\d\d \d\d:\d\d:\d\d(\.\d{1,6})?[+-]\d\d(:\d\d)?$/,
+  timestamptz: TIMESTAMP_TEXT,
   float8: /^-?(\d+(\.\d+)?(e[+-]?\d+)?|Infinity)$/,
   // PostgreSQL keeps no NUL in a text and refuses one in a parameter.
   text: /^[^\0]*$/,
   uuid: /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/,
 } as const
 
-export function encodeHistoryCursor(cursor: HistoryCursor): string {
-  return Buffer.from(JSON.stringify(cursor)).toString('base64url')
-}
+const STRANGE_CURSOR = { message: 'This place in the list does not fit it. Open the list from its start.', field: 'This cursor was not given out for this sort.' }
+
+export const encodeHistoryCursor = (cursor: HistoryCursor): string => encodeCursor(cursor)
 
 /** @throws DomainError bad-input for anything that encodeHistoryCursor did not make, and for a cursor of another sort */
 export function decodeHistoryCursor(text: string, sortName: string, sort: ReadingSort): HistoryCursor {
-  try {
-    const cursor = cursorSchema.parse(JSON.parse(Buffer.from(text, 'base64url').toString('utf8')))
-    const fits = cursor.sort === sortName && cursor.key.length === sort.key.length
-      && sort.key.every((part, index) => texts[part.type].test(cursor.key[index]!))
-    if (fits) return cursor
-  } catch {
-    // Falls through to the one refusal below.
-  }
-  throw new DomainError('bad-input', 'This place in the list does not fit it. Open the list from its start.', [{ path: 'cursor', message: 'This cursor was not given out for this sort.' }])
+  const ofThisSort = cursorSchema.refine(cursor => cursor.sort === sortName && cursor.key.length === sort.key.length
+    && sort.key.every((part, index) => texts[part.type].test(cursor.key[index]!)))
+  return decodeCursor(text, ofThisSort, STRANGE_CURSOR)
 }

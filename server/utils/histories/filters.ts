@@ -1,6 +1,7 @@
 import { type RawBuilder, sql, type SqlBool } from 'kysely'
 import type { ReadingsQuery } from '../../../shared/schemas/reading'
 import type { SignedInUser } from '../../../shared/types/roles'
+import { containsPattern } from '../core/search'
 
 type Condition = RawBuilder<SqlBool>
 
@@ -37,5 +38,5 @@ export function readFilters(query: ReadingsQuery, user: Pick<SignedInUser, 'id' 
 
 /** Every word must stand in the number, name or owner. % and _ are letters like others; more than eight words say nothing more. */
 function words(q: string | undefined): string[] {
-  return (q ?? '').replaceAll('\0', '').split(/\s+/).filter(Boolean).slice(0, 8).map(word => `%${word.replace(/[\\%_]/g, '\\$&')}%`)
+  return (q ?? '').replaceAll('\0', '').split(/\s+/).filter(Boolean).slice(0, 8).map(containsPattern)
 }

@@ -1,11 +1,13 @@
 import { type ExpressionBuilder, sql, type SqlBool } from 'kysely'
+import { z } from 'zod'
 import type { InstrumentQuery, InstrumentsPage, InstrumentView } from '../../../shared/schemas/instrument'
 import type { SignedInUser } from '../../../shared/types/roles'
 import type { HeadRow } from '../../../db/instruments.table'
+import { decodeCursor, encodeCursor, TIMESTAMP_TEXT } from '../core/cursor'
 import type { DB, Kysely } from '../core/db'
 import { notFound } from '../core/errors'
+import { containsPattern } from '../core/search'
 import { visibleTo } from './access'
-import { decodeListCursor, encodeListCursor } from './cursor'
 import { type InstrumentRecord, toInstrumentView } from './views'
 
 type Viewer = Pick<SignedInUser, 'id' | 'role'>
@@ -32,12 +34,16 @@ export async function getInstrument(db: Kysely<DB>, id: string, user: Viewer): P
   return toInstrumentView(row, await headsOf(db, [id]))
 }
 
+/** Where a page ended. */
+const cursorSchema = z.object({ createdKey: z.string().regex(TIMESTAMP_TEXT), id: z.uuid() })
+const STRANGE_CURSOR = { message: 'This page address is broken. Open the list from its start.', field: 'We did not give out this cursor.' }
+
 /** Newest first, in pages by cursor. @throws DomainError bad-input for a cursor that we did not give out */
 export async function listInstruments(db: Kysely<DB>, query: InstrumentQuery, user: Viewer): Promise<InstrumentsPage> {
   const matches = matching(query.q)
   let page = instrumentRows(db, user).where(matches).select(sql<string>`instruments.created_at::text`.as('created_key'))
   if (query.cursor) {
-    const { createdKey, id } = decodeListCursor(query.cursor)
+    const { createdKey, id } = decodeCursor(query.cursor, cursorSchema, STRANGE_CURSOR)
     page = page.where(sql<SqlBool>`(instruments.created_at, instruments.id) < (${createdKey}::timestamptz, ${id}::uuid)`)
   }
   const [rows, counted] = await Promise.all([
@@ -51,15 +57,15 @@ export async function listInstruments(db: Kysely<DB>, query: InstrumentQuery, us
   return {
     items: shown.map(row => toInstrumentView(row, heads)),
     total: counted.total,
-    next: last && rows.length > query.limit ? encodeListCursor({ createdKey: last.created_key, id: last.id }) : null,
+    next: last && rows.length > query.limit ? encodeCursor({ createdKey: last.created_key, id: last.id }) : null,
   }
 }
 
-/** Words of number, name or owner; % and _ are letters like others. */
+/** Words of number, name or owner. */
 function matching(q: string | undefined) {
   return (eb: ExpressionBuilder<DB, 'instruments'>) => {
     if (!q) return sql<SqlBool>`true`
-    const pattern = `%${q.replace(/[\\%_]/g, '\\$&')}%`
+    const pattern = containsPattern(q)
     return eb.or([
       sql<SqlBool>`(instruments.code || ' ' || instruments.name) ilike ${pattern}`,
       eb.exists(eb.selectFrom('users').select('users.id').whereRef('users.id', '=', 'instruments.customer_id').where('users.name', 'ilike', pattern)),

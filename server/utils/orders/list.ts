@@ -3,17 +3,19 @@ import { z } from 'zod'
 import type { ordersQuery, OrdersPage } from '../../../shared/schemas/order'
 import type { SignedInUser } from '../../../shared/types/roles'
 import type { DB, Kysely } from '../core/db'
-import { DomainError } from '../core/errors'
+import { decodeCursor, encodeCursor, TIMESTAMP_TEXT } from '../core/cursor'
+import { containsPattern } from '../core/search'
 import { dueOnText, isOverdue } from './dates'
 import { toOrderRowView } from './views'
 
-// Where a page ends. The time is kept as PostgreSQL's text: a JavaScript date would drop the microseconds and repeat rows.
-const cursorSchema = z.tuple([z.string().regex(/^\d{4}-\d\d-\d\d \d\d:\d\d:\d\d(\.\d+)?[+-]\d\d(:\d\d)?$/), z.uuid()])
+// Where a page ends.
+const cursorSchema = z.tuple([z.string().regex(TIMESTAMP_TEXT), z.uuid()])
+const STRANGE_CURSOR = { message: 'This list has moved on. Open it again from its beginning.', field: 'This cursor is not one that we gave out.' }
 
 /** Newest first: a customer's own, or everybody's for the workshop. */
 export async function listOrders(db: Kysely<DB>, user: SignedInUser, query: z.output<typeof ordersQuery>): Promise<OrdersPage> {
-  const after = query.cursor === undefined ? undefined : readCursor(query.cursor)
-  const like = query.q ? `%${query.q.replace(/[\\%_]/g, '\\$&')}%` : undefined
+  const after = query.cursor === undefined ? undefined : decodeCursor(query.cursor, cursorSchema, STRANGE_CURSOR)
+  const like = query.q ? containsPattern(query.q) : undefined
   const filtered = db.selectFrom('orders').innerJoin('users', 'users.id', 'orders.customer_id')
     .$if(user.role === 'customer', part => part.where('orders.customer_id', '=', user.id))
     .$if(query.status !== undefined, part => part.where('orders.status', '=', query.status!))
@@ -33,17 +35,5 @@ export async function listOrders(db: Kysely<DB>, user: SignedInUser, query: z.ou
   const { total } = await filtered.select(({ fn }) => fn.countAll<number>().as('total')).executeTakeFirstOrThrow()
   const items = rows.slice(0, query.limit)
   const last = rows.length > query.limit ? items.at(-1) : undefined
-  return { items: items.map(row => toOrderRowView(row, user)), total: Number(total), next: last ? writeCursor(last.created_text, last.id) : null }
-}
-
-function writeCursor(createdAt: string, id: string): string {
-  return Buffer.from(JSON.stringify([createdAt, id])).toString('base64url')
-}
-
-function readCursor(cursor: string): [string, string] {
-  try {
-    return cursorSchema.parse(JSON.parse(Buffer.from(cursor, 'base64url').toString('utf8')))
-  } catch {
-    throw new DomainError('bad-input', 'This list has moved on. Open it again from its beginning.', [{ path: 'cursor', message: 'This cursor is not one that we gave out.' }])
-  }
+  return { items: items.map(row => toOrderRowView(row, user)), total: Number(total), next: last ? encodeCursor([last.created_text, last.id]) : null }
 }

@@ -1,13 +1,19 @@
 import { sql, type SqlBool } from 'kysely'
+import { z } from 'zod'
 import type { PeoplePage, PeopleQuery, PersonView } from '../../../shared/schemas/people'
 import type { SignedInUser } from '../../../shared/types/roles'
+import { decodeCursor, encodeCursor } from '../core/cursor'
 import { useDb } from '../core/db'
-import { DomainError } from '../core/errors'
+import { containsPattern } from '../core/search'
+
+/** Where a page ended: name in lower case, without the NUL that PostgreSQL refuses, and id. */
+const cursorSchema = z.tuple([z.string().regex(/^[^\0]*$/), z.uuid()])
+const STRANGE_CURSOR = { message: 'This place in the list does not fit it. Open the list from its start.', field: 'We did not give out this cursor.' }
 
 /** By name. The owner sees everyone; staff and makers see customers. @throws DomainError bad-input for a strange cursor */
 export async function listPeople(query: PeopleQuery, viewer: Pick<SignedInUser, 'role'>): Promise<PeoplePage> {
-  const after = query.cursor ? decodeCursor(query.cursor) : undefined
-  const pattern = query.q && `%${query.q.replaceAll('\0', '').replace(/[\\%_]/g, '\\$&')}%`
+  const after = query.cursor ? decodeCursor(query.cursor, cursorSchema, STRANGE_CURSOR) : undefined
+  const pattern = query.q && containsPattern(query.q)
   const people = useDb().selectFrom('users')
     .$if(viewer.role !== 'owner', select => select.where('role', '=', 'customer'))
     .$if(Boolean(query.role), select => select.where('role', '=', query.role!))
@@ -20,7 +26,7 @@ export async function listPeople(query: PeopleQuery, viewer: Pick<SignedInUser, 
         eb.selectFrom('instruments').select(count => count.fn.countAll<number>().as('n')).whereRef('instruments.customer_id', '=', 'users.id').as('instruments'),
         eb.selectFrom('sessions').select(seen => seen.fn.max('sessions.last_seen_at').as('at')).whereRef('sessions.user_id', '=', 'users.id').as('last_seen_at'),
       ])
-      .$if(Boolean(after), select => select.where(sql<SqlBool>`(lower(users.name), users.id) > (${after?.name}::text, ${after?.id}::uuid)`))
+      .$if(Boolean(after), select => select.where(sql<SqlBool>`(lower(users.name), users.id) > (${after?.[0]}::text, ${after?.[1]}::uuid)`))
       .orderBy(sql`lower(users.name)`).orderBy('users.id').limit(query.limit + 1).execute(),
     people.select(eb => eb.fn.countAll<number>().as('total')).executeTakeFirstOrThrow(),
   ])
@@ -33,16 +39,6 @@ export async function listPeople(query: PeopleQuery, viewer: Pick<SignedInUser, 
       instruments: row.instruments ?? 0, createdAt: row.created_at.toISOString(), lastSeenAt: row.last_seen_at?.toISOString() ?? null,
     })),
     total,
-    next: last && rows.length > query.limit ? Buffer.from(JSON.stringify([last.name.toLowerCase(), last.id])).toString('base64url') : null,
+    next: last && rows.length > query.limit ? encodeCursor([last.name.toLowerCase(), last.id]) : null,
   }
-}
-
-function decodeCursor(text: string): { name: string, id: string } {
-  try {
-    const [name, id] = JSON.parse(Buffer.from(text, 'base64url').toString('utf8')) as unknown[]
-    if (typeof name === 'string' && !name.includes('\0') && typeof id === 'string' && /^[0-9a-f-]{36}$/.test(id)) return { name, id }
-  } catch {
-    // Falls through to the refusal.
-  }
-  throw new DomainError('bad-input', 'This place in the list does not fit it. Open the list from its start.', [{ path: 'cursor', message: 'We did not give out this cursor.' }])
 }

@@ -1,9 +1,9 @@
-import type { ReadingView, RecordingView, RefusalCode, SoundView } from '../../../shared/schemas/reading'
+import type { ReadingView, RecordingView } from '../../../shared/schemas/reading'
 import type { ReadingRow, RecordingRow } from '../../../db/readings.table'
 import type { HeadRow, InstrumentRow } from '../../../db/instruments.table'
 import type { SignedInUser } from '../../../shared/types/roles'
 import { filmStress } from '../../../shared/acoustics/film'
-import type { AnalysedReading } from '../analysis/types'
+import type { AnalysedReading, RefusalCode, SoundFacts } from '../analysis/types'
 import { toAnalysedHead } from './headContext'
 
 export function toRecordingView(row: RecordingRow): RecordingView {
@@ -20,7 +20,7 @@ export function toRecordingView(row: RecordingRow): RecordingView {
     privateToMaker: row.private_to_maker,
     recordedAt: row.recorded_at.toISOString(),
     byteCount: row.byte_count,
-    sound: row.sound as SoundView,
+    sound: row.sound as SoundFacts,
     refusal: row.refusal_code === null ? null : { code: row.refusal_code as RefusalCode, message: row.refusal_message ?? '' },
   }
 }
@@ -42,7 +42,7 @@ export function toReadingView({ reading, recording, head, instrument, makerName 
     tension, fundamentalHz, confidence, doubtful, modes, taps, rim, warnings, unexplained, budget, runnerUp, analysisVersion,
     filmStress: reading.taken_at < head.film_since ? null : { mPa: stress.stressPa / 1e6, shareOfYield: stress.shareOfYield },
     makerName,
-    sound: recording.sound as SoundView,
+    sound: recording.sound as SoundFacts,
     recording: {
       id: recording.id, note: recording.note, strike: recording.strike, rod: recording.rod, firstRod: recording.first_rod,
       centreDamped: recording.centre_damped, temperatureC: recording.temperature_c, audible: mayHear(user, recording),
