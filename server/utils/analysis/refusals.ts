@@ -14,8 +14,9 @@ const SHORTEST_RING_S = 0.15
 /** Flat tops in more than this share of the first tenth of the ring bend every line's level and add false ones. */
 export const CLIPPED_SHARE = 0.005
 const CLIP_WINDOW_S = 0.1
-/** A tone's own crest can be level for a few samples; three such crests cannot, since a tap's ring falls. */
+/** A tone's own crest can be level for a few samples, but it leaves that level gently: by less than this many steps to the next sample. */
 const FLAT_SAMPLES = 3
+const GENTLE_STEPS = 5
 const FLAT_RUNS = 3
 
 /** Refuses what needs no look at taps: too short to hold one, or nothing recorded. */
@@ -23,7 +24,8 @@ export function refuseEmpty(sound: MonoSound) {
   if (sound.samples.length < SHORTEST_RECORDING_S * sound.sampleRateHz) {
     throw new RefusalError('too-short', 'The recording is shorter than a tap. Record a moment of quiet, the tap, and at least a second of its ring.')
   }
-  if (sound.peak < SILENT_PEAK) {
+  const { low, high, offset } = sound.rails
+  if (Math.max(high - offset, offset - low) < SILENT_PEAK) {
     throw new RefusalError('silent', 'The recording is silent. Check that the right microphone is chosen and its gain is up, then tap again.')
   }
 }
@@ -46,16 +48,19 @@ export function clippingOf(sound: MonoSound, tap: Tap): ClippingFound {
   const to = Math.min(samples.length, ringFrom + Math.round(CLIP_WINDOW_S * sampleRateHz))
   // Equal to within a 16 bit step: rails of a real converter or of a program are exact.
   const near = 2 ** -15 * Math.max(1, Math.abs(rails.high), Math.abs(rails.low))
+  const under = (n: number) => {
+    const x = (samples[n] ?? 0) + rails.offset
+    return Math.min(rails.high - x, x - rails.low)
+  }
   let run = 0
   let runs = 0
   let level = 0
   for (let n = Math.max(0, from); n <= to; n++) {
-    const x = (samples[n] ?? 0) + rails.offset
-    if (n < to && (rails.high - x <= near || x - rails.low <= near)) {
+    if (n < to && under(n) <= near) {
       run++
       continue
     }
-    if (run >= FLAT_SAMPLES) {
+    if (run >= FLAT_SAMPLES && (n === to || Math.max(under(n), under(n - run - 1)) > GENTLE_STEPS * near)) {
       runs++
       level += Math.max(0, n - Math.max(n - run, ringFrom))
     }

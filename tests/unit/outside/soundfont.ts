@@ -33,33 +33,46 @@ function workFolder(): string {
   return folder
 }
 
-/** A standard MIDI file of format 0: half a second of rest, one note held three seconds. 500 ticks a quarter of 0.5 s. */
-export function oneNoteMidi(channel: number, program: number, note: number, velocity: number): Uint8Array {
+/** A note of a phrase: when it starts and how long it is held, ticks of 1 ms. */
+export interface PhraseNote { at: number, note: number, held: number, velocity?: number }
+
+/** A standard MIDI file of format 0 (MIDI 1.0, RP-001): half a second of rest, then the notes; a tick is 1 ms. */
+export function phraseMidi(channel: number, program: number, notes: PhraseNote[]): Uint8Array {
+  const REST = 500
   const length = (ticks: number): number[] => ticks < 128 ? [ticks] : [0x80 | (ticks >> 7), ticks & 0x7F]
-  const track = [
-    0, 0xC0 | channel, program,
-    ...length(500), 0x90 | channel, note, velocity,
-    ...length(3000), 0x80 | channel, note, 0,
-    0, 0xFF, 0x2F, 0,
-  ]
+  const events = notes.flatMap(({ at, note, held, velocity }) => [
+    { at: REST + at, bytes: [0x90 | channel, note, velocity ?? 90] }, { at: REST + at + held, bytes: [0x80 | channel, note, 0] },
+  ]).sort((a, b) => a.at - b.at)
+  let now = 0
+  const track = [0, 0xC0 | channel, program]
+  for (const { at, bytes } of events) {
+    track.push(...length(at - now), ...bytes)
+    now = at
+  }
+  track.push(0, 0xFF, 0x2F, 0)
   const number = (value: number, bytes: number): number[] => Array.from({ length: bytes }, (_, i) => (value >> (8 * (bytes - 1 - i))) & 0xFF)
   const text = (value: string): number[] => [...value].map(letter => letter.charCodeAt(0))
   return Uint8Array.from([...text('MThd'), ...number(6, 4), ...number(0, 2), ...number(1, 2), ...number(500, 2), ...text('MTrk'), ...number(track.length, 4), ...track])
 }
 
-/** A note of the General MIDI set as stereo WAV at 48 kHz, reverb and chorus off. */
-export function renderNote(channel: number, program: number, note: number, velocity = 90): Uint8Array {
-  const key = `${channel}-${program}-${note}-${velocity}`
+/** Notes of the General MIDI set as stereo WAV at 48 kHz, reverb and chorus off. */
+export function renderPhrase(channel: number, program: number, notes: PhraseNote[]): Uint8Array {
+  const key = [channel, program, ...notes.map(n => `${n.at}n${n.note}h${n.held}v${n.velocity ?? 90}`)].join('-').slice(0, 200)
   const found = kept.get(key)
   if (found) return found
   requirePackages()
   const midi = join(workFolder(), `${key}.mid`)
   const wav = join(workFolder(), `${key}.wav`)
-  writeFileSync(midi, oneNoteMidi(channel, program, note, velocity))
+  writeFileSync(midi, phraseMidi(channel, program, notes))
   execFileSync('/usr/bin/fluidsynth', ['-ni', '-R', '0', '-C', '0', '-g', '0.8', '-r', '48000', '-T', 'wav', '-F', wav, SOUNDFONT, midi], { stdio: 'ignore', timeout: 30_000 })
   const bytes = new Uint8Array(readFileSync(wav))
   kept.set(key, bytes)
   return bytes
+}
+
+/** One note of the General MIDI set, held three seconds. */
+export function renderNote(channel: number, program: number, note: number, velocity = 90): Uint8Array {
+  return renderPhrase(channel, program, [{ at: 0, note, held: 3000, velocity }])
 }
 
 /** A recording of sonic-pi-samples, led in by 0.3 s of silence and followed by 0.3 s more. */

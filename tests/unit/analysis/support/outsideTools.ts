@@ -35,3 +35,13 @@ export function soxStream(format: string[], effects: string[]): Uint8Array {
 
 /** A sentence spoken by espeak-ng. */
 export const speech = (text: string, voice = 'en-us') => fileFrom('espeak-ng', 'espeak-ng', path => ['-v', voice, '-w', path, text])
+
+/** A WAV taken through sox: format options of the output, then effects. */
+export function soxConverted(wav: Uint8Array, format: string[], effects: string[]): Uint8Array {
+  try {
+    return execFileSync('sox', ['-D', '-t', 'wav', '-', ...format, '-t', 'wav', '-', ...effects], { input: wav, stdio: ['pipe', 'pipe', 'ignore'], maxBuffer: 64 * 1024 * 1024 })
+  } catch (error) {
+    if ((error as NodeJS.ErrnoException).code === 'ENOENT') throw new Error('This test needs sox: apt-get install sox', { cause: error })
+    throw error
+  }
+}
