@@ -7,10 +7,10 @@ const DRUM: SimDrum = {
   unevenness: [{ k: 2, ratio: 0.01, phaseRad: 0.4 }, { k: 4, ratio: 0.01, phaseRad: 1.1 }], lossPerS: 2, lossPerHz: 0.02,
 }
 
-/** A 3 s, 48 kHz mono recording of one edge tap on a 13 in head, in a room, with noise 40 dB down. */
-export function benchRecording(): { wav: Uint8Array, request: AnalysisRequest } {
+/** A 3 s, 48 kHz mono recording of one edge tap on a 13 in head, in a room, with noise 40 dB down; tension in N/m. */
+export function benchRecording(construction: 'open' | 'fixture' = 'open'): { wav: Uint8Array, request: AnalysisRequest, tensionNPerM: number } {
   const { samples, sampleRateHz } = simulateTap({
-    drum: DRUM,
+    drum: { ...DRUM, construction },
     strike: { radiusRatio: 0.75, angleRad: 0.2, centreDamped: true },
     microphone: { radiusRatio: 0.5, angleRad: 0.2, heightM: 0.1 },
     recording: { seed: 7, sampleRateHz: 48_000, quietS: 0.3, ringS: 2.7, snrDb: 40, room: { levelDb: -22, t60S: 0.4 } },
@@ -18,9 +18,10 @@ export function benchRecording(): { wav: Uint8Array, request: AnalysisRequest } 
   const wav = writeWav16(samples, sampleRateHz)
   return {
     wav,
+    tensionNPerM: DRUM.batter.tensionNPerM,
     request: {
       wav,
-      instrument: { construction: 'open', radiusM: DRUM.radiusM, depthM: DRUM.depthM, rodCount: 8, heads: [{ ...HEAD, side: 'batter', material: 'pet', yieldPa: 100e6 }] },
+      instrument: { construction, radiusM: DRUM.radiusM, depthM: DRUM.depthM, rodCount: 8, heads: [{ ...HEAD, side: 'batter', material: 'pet', yieldPa: 100e6 }] },
       side: 'batter', strike: 'edge', rod: 1, firstRod: 1, centreDamped: true, temperatureC: 20,
     },
   }
