@@ -134,14 +134,14 @@ export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: nu
   }
   const perHead = [0, 0]
   let byEdge = 0
-  let bySigma = 0
+  const byDensity = [0, 0]
   let amplitudeSquared = 0
   let headStiffness = 0
   for (let i = 0; i < shapes; i++) {
     const square = x[i]! ** 2
     perHead[i < count ? 0 : 1]! += square * matrices.tensionSlope[i]!
     byEdge += square * matrices.edgeSlope[i]!
-    bySigma += square * headDensity(matrices, i)
+    byDensity[i < count ? 0 : 1]! += square * headDensity(matrices, i)
     headStiffness += square * matrices.headStiffness[i]!
     amplitudeSquared += square
   }
@@ -159,7 +159,7 @@ export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: nu
     frequencyHz: omega * Math.hypot(radiating.real, radiating.imaginary) / (2 * Math.PI),
     losslessHz: omega / (2 * Math.PI),
     idealHz: idealFrequencyHz({ radiusM: state.radiusM, arealDensityKgM2: film.film.arealDensityKgM2, tensionNPerM: film.tensionNPerM }, air.basis.m, n),
-    addedMassKgM2: (headStiffness / omegaSquared - bySigma) / amplitudeSquared,
+    addedMassKgM2: (headStiffness / omegaSquared - byDensity[0]! - byDensity[1]!) / amplitudeSquared,
     radiationDampingPerS: omega * radiating.imaginary,
     struckShape: x.slice(0, count).map(v => v * scale),
     otherShape: shapes > count ? x.slice(count, shapes).map(v => v * scale) : new Float64Array(0),
@@ -167,7 +167,8 @@ export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: nu
       lnTension: perHead[0]! / denominator,
       lnOtherTension: perHead[1]! / denominator,
       lnAirScale: (byAirStiffness - omegaSquared * byAirMass) / denominator,
-      lnArealDensity: -omegaSquared * bySigma / denominator,
+      lnArealDensity: -omegaSquared * byDensity[0]! / denominator,
+      lnOtherArealDensity: -omegaSquared * byDensity[1]! / denominator,
       edgeFactor: byEdge / denominator,
     },
   }

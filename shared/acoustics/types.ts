@@ -63,8 +63,9 @@ export interface ModeSensitivity {
   lnOtherTension: number
   /** By the air's added mass of the mode's own group (m = 0, or m >= 1). */
   lnAirScale: number
-  /** By the areal density of both heads. */
+  /** By the areal density of the struck head, and of the other. */
   lnArealDensity: number
+  lnOtherArealDensity: number
   /** By the edge factor c itself: d ln f / d c. */
   edgeFactor: number
 }

@@ -4,6 +4,8 @@ export type RefusalCode = 'silent' | 'clipped' | 'too-short' | 'low-rate' | 'no-
 
 export interface Refusal { code: RefusalCode, message: string }
 
+export type HeadSide = 'batter' | 'resonant'
+
 export interface MatchedMode {
   m: number
   n: number
@@ -18,9 +20,12 @@ export interface MatchedMode {
   splitHz?: [number, number]
   /** Which head the line belongs to, when it is not the struck one. */
   head?: 'other'
+  /** Two heads, no nodal diameters: whether they move the same way or against each other. */
+  branch?: 'in-phase' | 'against'
 }
 
-export interface UnexplainedPeak { frequencyHz: number, levelDb: number, t60S: number, cause?: string }
+/** A tone that no mode explains; u95Hz is missing in readings of version 1.0.0, cause where none is likely. */
+export interface UnexplainedPeak { frequencyHz: number, levelDb: number, t60S: number, u95Hz?: number, cause?: string }
 
 export interface BudgetLine {
   /** Plain name of the contribution, e.g. 'diameter'. */
@@ -34,6 +39,36 @@ export interface BudgetLine {
   source: string
   /** Counts towards repeatability on the same drum and bench. */
   repeatable: boolean
+}
+
+/** A figure with its standard uncertainty. */
+export interface Measured { value: number, standard: number }
+
+/**
+ * What a reading at a known tension teaches of an instrument and its head. Later readings of the same head start from
+ * it: the figures below with their standard uncertainties, and how they hang together.
+ */
+export interface HeadCalibration {
+  /** Factor on the added mass of the air for modes without, and with, nodal diameters. */
+  airScaleAxisymmetric: Measured
+  airScaleOthers: Measured
+  /** c of the effective radius R - c sqrt(D/T). */
+  edgeFactor: Measured
+  arealDensityKgM2: Measured
+  radiusM: Measured
+  /** Of ln air m = 0, ln air m >= 1, edge factor, ln areal density, ln radius: 25 numbers, row by row. */
+  covariance: number[]
+  /** The tension that it rests on, N/m. */
+  tensionNPerM: Measured
+}
+
+/** What one reading of a double-headed drum says of both heads. */
+export interface TwoHeads {
+  struck: HeadSide
+  /** Tension of the head that was not struck, as this tap shows it. */
+  other: { nPerM: number, u95NPerM: number }
+  /** What rests on little: a head's own tension, or how the two are coupled. Empty where all is sure. */
+  unsure: Array<HeadSide | 'coupling'>
 }
 
 export interface ReadingWarning { code: string, message: string }
@@ -52,10 +87,31 @@ export interface AnalysedReading {
   taps: { atS: number, rod: number | null }[]
   rim: null | { evennessPercent: number, rods: RodTension[] }
   budget: BudgetLine[]
-  /** The next best explanation, when it is close. */
+  /** Double-headed drums only. */
+  twoHeads?: TwoHeads
+  /** The next best explanation, when it is within 20 to 1. */
   runnerUp: null | { tensionNPerM: number, fundamentalHz: number, odds: number }
   warnings: ReadingWarning[]
 }
+
+export interface HeadTension { nPerM: number, u95NPerM: number, repeatabilityU95NPerM: number }
+
+/** Both heads of a drum read together, from one tap on each. */
+export interface BothHeadsReading {
+  analysisVersion: string
+  batter: HeadTension
+  resonant: HeadTension
+  /** Correlation of the two tensions' errors, -1 to 1. */
+  correlation: number
+  /** The coupled pair (0,1): both heads the same way, and against each other. measuredHz is null where it was not heard. */
+  pair: { inPhase: PairTone, against: PairTone }
+  modes: (MatchedMode & { tapped: HeadSide, side: HeadSide })[]
+  confidence: number
+  doubtful: boolean
+  warnings: ReadingWarning[]
+}
+
+export interface PairTone { measuredHz: number | null, predictedHz: number }
 
 /** Facts of the sound and what the page draws of it. */
 export interface SoundFacts {

@@ -1,7 +1,7 @@
-import { bendingStiffnessNm } from '../../../shared/acoustics'
 import type { ExplainRequest } from './explanation'
 import type { MatchingContext } from './matchingContext'
-import { INPUT_UNCERTAINTY } from './matchingPriors'
+import type { PriorKind } from './matchingNuisance'
+import { EDGE_MEAN, INPUT_UNCERTAINTY } from './matchingPriors'
 import type { TensionFit } from './tensionFit'
 import { solveWeighted } from './tensionSolve'
 import type { BudgetLine } from './types'
@@ -36,8 +36,8 @@ interface Part { name: string, kind: 'A' | 'B', relative: number, source: string
  * Uncertainty of the tension by the GUM: each contribution alone, combined in squares, expanded to 95 % by the effective
  * degrees of freedom (Welch-Satterthwaite).
  *
- * Every row of the fit moves ln T by its gain times its own error; inputs move it by the gains times what they do to each
- * mode's frequency.
+ * Every row of the fit moves ln T by its gain times its own error; and so do
+ * the priors of air, edge and the maker's own figures.
  * Source: JCGM 100:2008, sections 5.1 and G.4.
  */
 export function tensionBudget(context: MatchingContext, fit: TensionFit, request: ExplainRequest): TensionBudget {
@@ -54,14 +54,10 @@ export function tensionBudget(context: MatchingContext, fit: TensionFit, request
     spread += (gain * row.source.modelError * Math.max(1, scatter)) ** 2
   }
   const fromPriors = (kind: string) => Math.sqrt(fit.rows.reduce((sum, row, i) => sum + (row.source.kind === kind ? (gains[i]! * row.error) ** 2 : 0), 0))
-  const inputs = inputParts(context, fit, gains, request)
   const parts: Part[] = [
     { name: 'frequency', kind: 'A', relative: Math.sqrt(noise), source: 'standard errors of the lines found in this recording', repeatable: true, freedom: 30 },
     { name: 'spread across modes', kind: 'A', relative: Math.sqrt(spread), source: `residuals of ${modeRows.length} modes and the model's own error by mode`, repeatable: false, freedom: PRIOR_FREEDOM + freedom },
-    { name: 'air load', kind: 'B', relative: fromPriors('air'), source: `scale of the added air mass on this construction: ${context.priors.airAxisymmetric} for m = 0, ${context.priors.airOthers} for m >= 1`, repeatable: false, freedom: Infinity },
-    { name: 'film bend at the edge', kind: 'B', relative: fromPriors('edge'), source: 'edge factor 0.5 +- 0.2 of the layer sqrt(D/T)', repeatable: false, freedom: Infinity },
-    ...(context.twoHeads ? [{ name: 'other head', kind: 'B' as const, relative: fromPriors('other'), source: 'tension of the head that was not struck', repeatable: false, freedom: Infinity }] : []),
-    ...inputs,
+    ...priorParts(context, request).map(({ kind, name, source, repeatable = false }) => ({ name, kind: 'B' as const, relative: fromPriors(kind), source, repeatable, freedom: Infinity })),
   ]
   const variance = parts.reduce((sum, part) => sum + part.relative ** 2, 0)
   const tension = fit.tensionNPerM
@@ -75,31 +71,27 @@ export function tensionBudget(context: MatchingContext, fit: TensionFit, request
   }
 }
 
-/** What the stated diameter, areal density, modulus and temperature may be off, as parts of ln T. */
-function inputParts(context: MatchingContext, fit: TensionFit, gains: number[], request: ExplainRequest): Part[] {
-  const { radiusM } = request.instrument
-  let byRadius = 0
-  let byDensity = 0
-  let byModulus = 0
-  let byAir = 0
-  const bend = bendingStiffnessNm(context.film)
-  fit.matched.forEach(({ mode }, i) => {
-    const s = mode.sensitivity
-    const gain = gains[i]!
-    // f follows R as T^2 does backwards, and the air's mass grows with R.
-    byRadius -= gain * (-2 * (s.lnTension + s.lnOtherTension) + s.lnAirScale)
-    byDensity -= gain * s.lnArealDensity
-    // d ln f / d ln D: the bending term itself, and the edge layer, which goes as sqrt(D).
-    const k2 = (2 * Math.PI * mode.idealHz) ** 2 * context.film.arealDensityKgM2 / fit.tensionNPerM
-    byModulus -= gain * (0.5 * bend * k2 / fit.tensionNPerM + 0.5 * fit.edgeFactor * s.edgeFactor)
-    byAir -= gain * s.lnAirScale
-  })
-  const kelvin = request.temperatureC + 273.15
-  const part = (name: string, relative: number, source: string): Part => ({ name, kind: 'B', relative: Math.abs(relative), source, repeatable: name === 'temperature', freedom: Infinity })
-  return [
-    part('diameter', byRadius * INPUT_UNCERTAINTY.radius, `${(2000 * radiusM * INPUT_UNCERTAINTY.radius).toFixed(2)} mm on ${(2000 * radiusM).toFixed(0)} mm, by tape`),
-    part('areal density', byDensity * INPUT_UNCERTAINTY.arealDensity, '1 % of the film\'s data sheet or scale'),
-    part('film modulus', byModulus * INPUT_UNCERTAINTY.modulus, '10 % of the film\'s data sheet'),
-    part('temperature', byAir * INPUT_UNCERTAINTY.temperatureK / kelvin, '1 K at the bench, through the density of the air'),
-  ]
+interface PriorPart { kind: PriorKind, name: string, source: string, repeatable?: boolean }
+
+/** Contributions that come from what is known beforehand, with where that comes from. */
+function priorParts(context: MatchingContext, { instrument }: ExplainRequest): PriorPart[] {
+  const { priors, twoHeads } = context
+  const { uncertainty, calibration } = instrument
+  const diameterMm = 2000 * instrument.radiusM
+  const measured = uncertainty?.diameterMm
+  const weighed = uncertainty?.arealDensityRelative
+  const parts: PriorPart[] = calibration
+    ? [{ kind: 'calibration', name: 'calibration', source: `air, edge, diameter and areal density as found at a known ${calibration.tensionNPerM.value.toFixed(0)} +- ${calibration.tensionNPerM.standard.toFixed(0)} N/m` }]
+    : [
+        { kind: 'air', name: 'air load', source: `scale of the added air mass on this construction: ${priors.airAxisymmetric} for m = 0, ${priors.airOthers} for m >= 1` },
+        { kind: 'edge', name: 'film bend at the edge', source: `edge factor ${EDGE_MEAN} +- ${priors.edgeFactor} of the layer sqrt(D/T)` },
+        { kind: 'diameter', name: 'diameter', source: `${(measured ?? diameterMm * INPUT_UNCERTAINTY.radius).toFixed(2)} mm on ${diameterMm.toFixed(0)} mm, ${measured === undefined ? 'by tape' : 'as measured by the maker'}` },
+        { kind: 'density', name: 'areal density', source: weighed === undefined ? `${100 * INPUT_UNCERTAINTY.arealDensity} % of the film's data sheet` : `${(100 * weighed).toFixed(2)} %, by the maker's scale` },
+      ]
+  parts.push(
+    { kind: 'modulus', name: 'film modulus', source: `${100 * INPUT_UNCERTAINTY.modulus} % of the film's data sheet` },
+    { kind: 'temperature', name: 'temperature', source: `${INPUT_UNCERTAINTY.temperatureK} K at the bench, through the density of the air`, repeatable: true },
+  )
+  if (twoHeads) parts.push({ kind: 'other', name: 'other head', source: 'tension of the head that was not struck' })
+  return parts
 }

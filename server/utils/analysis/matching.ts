@@ -2,6 +2,7 @@ import { budgetAndConfidence } from './matchingJudgement'
 import type { ExplainLines, Explanation } from './explanation'
 import { scanHypotheses } from './hypotheses'
 import { matchingContext, type MatchingContext } from './matchingContext'
+import { priorRows } from './matchingNuisance'
 import { namingPriors } from './matchingPriors'
 import { matchedModes, unexplainedPeaks } from './matchingReport'
 import { scoreInput, type ScoreInput } from './matchingInput'
@@ -29,7 +30,7 @@ export const explainLines: ExplainLines = (findings, request): Explanation => {
   const context = matchingContext(request)
   const priors = namingPriors(context.construction)
   const namingDiffers = priors !== context.priors
-  const naming = namingDiffers ? { ...context, priors } : context
+  const naming = namingDiffers ? { ...context, priors, priorRows: priorRows({ priors, request, otherOffset: context.otherOffset, twoHeads: context.twoHeads }) } : context
   const input = scoreInput(naming, findings, request)
   if (input.lines.length === 0) throw notADrum()
   const fits = rankedFits(context, naming, input)
@@ -43,7 +44,7 @@ export const explainLines: ExplainLines = (findings, request): Explanation => {
   return {
     ...judged,
     fundamentalHz: heard ? heard.lines[0]!.line.frequencyHz : lowest?.frequencyHz ?? context.model.fundamentalHz(best.tensionNPerM, best.otherTensionNPerM),
-    modes: matchedModes(best),
+    modes: matchedModes(best.matched),
     unexplained: unexplainedPeaks(best, findings),
   }
 }
@@ -59,7 +60,7 @@ function rankedFits(context: MatchingContext, naming: MatchingContext, input: Sc
     if (finalists.some(other => samePlace(other, fit))) continue
     finalists.push(fit)
   }
-  const full = finalists.map(fit => fitTension(naming, near, startAt(fit), FULL_FIT))
+  const full = finalists.map(fit => fitTension(naming, near, fit.state, FULL_FIT))
   full.sort((a, b) => b.score - a.score)
   return full
 }
@@ -73,16 +74,11 @@ function closeFit(context: MatchingContext, fits: TensionFit[], tight: (() => Sc
   if (!tight) return named
   const input = tight()
   const held = fits.filter(fit => Math.abs(Math.log(fit.tensionNPerM / named.tensionNPerM)) < SAME_HEAD)
-    .map(fit => fitTension(context, input, startAt(fit), CLOSE_FIT))
+    .map(fit => fitTension(context, input, fit.state, CLOSE_FIT))
     .filter(fit => Math.abs(Math.log(fit.tensionNPerM / named.tensionNPerM)) < SAME_HEAD && trustedShare(fit) > KEPT_SHARE * trustedShare(named))
     .sort((a, b) => b.score - a.score)
   return held[0] ? { ...held[0], score: named.score } : null
 }
-
-const startAt = (fit: TensionFit) => ({
-  lnTension: Math.log(fit.tensionNPerM), lnOther: Math.log(fit.otherTensionNPerM),
-  lnAir: [Math.log(fit.airScale.axisymmetric), Math.log(fit.airScale.others)] as [number, number], edge: fit.edgeFactor,
-})
 
 function trustedShare(fit: TensionFit): number {
   return fit.matched.reduce((sum, match) => sum + (match.weight > 0.3 ? match.lines.reduce((s, line) => s + line.share, 0) : 0), 0)

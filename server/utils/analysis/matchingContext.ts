@@ -1,7 +1,8 @@
 import { airAt, createDrumModel, filmThicknessM, type DrumModel, type HeadFilm } from '../../../shared/acoustics'
 import type { ExplainRequest } from './explanation'
-import { modelPriors, type ModelPriors } from './matchingPriors'
-import type { AnalysedHead, Construction } from './types'
+import { priorRows, type PriorRow } from './matchingNuisance'
+import { EDGE_MEAN, modelPriors, type ModelPriors } from './matchingPriors'
+import type { AnalysedHead, AnalysedInstrument, Construction } from './types'
 
 /** A drum ready for matching: its model, and the range of tensions that its film can be at. */
 export interface MatchingContext {
@@ -9,6 +10,11 @@ export interface MatchingContext {
   construction: Construction
   model: DrumModel
   priors: ModelPriors
+  /** What the fit is told of air, edge and the maker's figures. */
+  priorRows: PriorRow[]
+  /** Air and edge to start from. */
+  airScale: { axisymmetric: number, others: number }
+  edgeFactor: number
   film: HeadFilm
   twoHeads: boolean
   /** Range of ln T of the struck head. */
@@ -37,25 +43,42 @@ function filmOf(head: AnalysedHead): HeadFilm {
  * @throws RangeError when the instrument's figures are outside the model's range
  */
 export function matchingContext(request: ExplainRequest): MatchingContext {
-  const { instrument, side, temperatureC } = request
+  const { side, temperatureC } = request
+  const instrument = asCalibrated(request)
+  const { calibration } = instrument
   const struck = instrument.heads.find(head => head.side === side) ?? instrument.heads[0]
   if (!struck) throw new RangeError('the instrument has no head')
   const twoHeads = instrument.construction === 'double-headed'
   const other = instrument.heads.find(head => head !== struck) ?? struck
-  const key = JSON.stringify([instrument.construction, instrument.radiusM, instrument.depthM, instrument.bowlVolumeM3, struck, twoHeads ? other : null, temperatureC])
+  const key = JSON.stringify([instrument.construction, instrument.radiusM, instrument.depthM, instrument.bowlVolumeM3, struck, twoHeads ? other : null, temperatureC, instrument.uncertainty, calibration])
   const known = kept.get(key)
   if (known) return known
   const film = filmOf(struck)
   const { construction, radiusM, depthM, bowlVolumeM3 } = instrument
-  const model = createDrumModel({ geometry: { construction, radiusM, depthM, bowlVolumeM3 }, film, otherFilm: twoHeads ? filmOf(other) : undefined, air: airAt({ temperatureC }) })
+  const airScale = { axisymmetric: calibration?.airScaleAxisymmetric.value ?? 1, others: calibration?.airScaleOthers.value ?? 1 }
+  const edgeFactor = calibration?.edgeFactor.value ?? EDGE_MEAN
+  const model = createDrumModel({ geometry: { construction, radiusM, depthM, bowlVolumeM3 }, film, otherFilm: twoHeads ? filmOf(other) : undefined, air: airAt({ temperatureC }), airScale, edgeFactor })
+  const priors = modelPriors(construction)
+  const otherOffset = Math.log(other.arealDensityKgM2 / struck.arealDensityKgM2)
   const made: MatchingContext = {
-    key, construction, model, film, twoHeads,
-    priors: modelPriors(construction),
+    key, construction, model, film, twoHeads, priors, airScale, edgeFactor, otherOffset,
+    priorRows: priorRows({ priors, request: { instrument, temperatureC }, otherOffset, twoHeads }),
     lnTensionFrom: Math.log(LEAST_STRESS_PA * filmThicknessM(film)),
     lnTensionTo: Math.log(Math.max(ABOVE_YIELD * film.yieldPa, 40e6) * filmThicknessM(film)),
-    otherOffset: Math.log(other.arealDensityKgM2 / struck.arealDensityKgM2),
   }
   if (kept.size >= MOST_KEPT) kept.delete(kept.keys().next().value!)
   kept.set(key, made)
   return made
+}
+
+/** The instrument with the radius and the struck head's areal density that its calibration found. */
+function asCalibrated({ instrument, side }: ExplainRequest): AnalysedInstrument {
+  const { calibration } = instrument
+  if (!calibration) return instrument
+  const struck = instrument.heads.find(head => head.side === side) ?? instrument.heads[0]
+  return {
+    ...instrument,
+    radiusM: calibration.radiusM.value,
+    heads: instrument.heads.map(head => (head === struck ? { ...head, arealDensityKgM2: calibration.arealDensityKgM2.value } : head)),
+  }
 }

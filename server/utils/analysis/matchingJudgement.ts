@@ -1,10 +1,11 @@
 import { filmStress } from '../../../shared/acoustics'
-import { tensionBudget } from './budget'
+import { studentT95, tensionBudget, type TensionBudget } from './budget'
 import type { Explanation, ExplainRequest } from './explanation'
 import type { MatchingContext } from './matchingContext'
+import { UNKNOWN, UNKNOWNS } from './matchingNuisance'
 import { namingPriors } from './matchingPriors'
 import type { MatchedLines, TensionFit } from './tensionFit'
-import type { ReadingWarning } from './types'
+import type { ReadingWarning, TwoHeads } from './types'
 
 /** Errors of neighbouring lines are not independent, so odds are tempered before they are believed. */
 const TEMPER = 0.5
@@ -15,6 +16,8 @@ const LOOSE_AIR = 0.5
 /** Runner-up shown and reading doubtful when the odds are below these. */
 const SHOWN_ODDS = 200
 const DOUBTFUL_ODDS = 8
+/** A line with less weight than this is an outlier. */
+const TRUSTED = 0.3
 const DOUBTFUL_SCATTER = 2
 const DOUBTFUL_EXPLAINED = 0.65
 const NEAR_YIELD = 0.8
@@ -28,13 +31,13 @@ interface ToJudge {
   strained: boolean
 }
 
-type Judged = Pick<Explanation, 'tension' | 'confidence' | 'doubtful' | 'budget' | 'runnerUp' | 'warnings'>
+type Judged = Pick<Explanation, 'tension' | 'confidence' | 'doubtful' | 'budget' | 'runnerUp' | 'warnings' | 'twoHeads'>
 
 /** Tension with its budget, how far it can be trusted, and what to tell the maker. */
 export function budgetAndConfidence({ context, fits, request, strained }: ToJudge): Judged {
   const best = fits[0]!
   const budget = tensionBudget(context, best, request)
-  const trusted = best.matched.filter(match => match.weight > 0.3)
+  const trusted = best.matched.filter(match => match.weight > TRUSTED)
   const explained = trusted.reduce((sum, match) => sum + match.lines.reduce((s, line) => s + line.share, 0), 0)
   const different = Math.max(DIFFERENT, LOOSE_AIR * namingPriors(context.construction).airOthers)
   const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > different)
@@ -49,11 +52,27 @@ export function budgetAndConfidence({ context, fits, request, strained }: ToJudg
     confidence: Math.round(1000 * (odds === Infinity ? 1 : odds / (1 + odds)) * Math.max(0, fitQuality)) / 1000,
     doubtful,
     budget: budget.lines,
+    ...(context.twoHeads ? { twoHeads: twoHeadsOf(context, best, budget, request) } : {}),
     runnerUp: rival && odds < SHOWN_ODDS
       ? { tensionNPerM: rival.tensionNPerM, fundamentalHz: context.model.fundamentalHz(rival.tensionNPerM, rival.otherTensionNPerM), odds: Math.round(10 * odds) / 10 }
       : null,
     warnings: warningsFor({ context, best, request, few, poor, close: odds < DOUBTFUL_ODDS ? rival : undefined, onlyAxisymmetric: trusted.every(match => match.mode.m === 0) }),
   }
+}
+
+const UNSURE_STRUCK = 0.04
+const UNSURE_OTHER = 0.1
+/** The coupling is seen when both lowest modes without nodal diameters were heard, or one and enough of the rest. */
+function twoHeadsOf(context: MatchingContext, best: TensionFit, budget: TensionBudget, request: ExplainRequest): TwoHeads {
+  const variance = best.covariance[UNKNOWN.other * UNKNOWNS + UNKNOWN.other]!
+  const other = { nPerM: best.otherTensionNPerM, u95NPerM: studentT95(30) * Math.sqrt(variance) * Math.max(1, budget.scatter) * best.otherTensionNPerM }
+  const struck = request.side
+  const lowest = best.modes.filter(mode => mode.m === 0).slice(0, 2)
+  const unsure: TwoHeads['unsure'] = []
+  if (budget.u95NPerM > UNSURE_STRUCK * best.tensionNPerM) unsure.push(struck)
+  if (other.u95NPerM > UNSURE_OTHER * other.nPerM) unsure.push(struck === 'batter' ? 'resonant' : 'batter')
+  if (!lowest.every(mode => best.matched.some(match => match.mode === mode && match.weight > TRUSTED))) unsure.push('coupling')
+  return { struck, other, unsure }
 }
 
 /** A tap with nothing resting on the centre sounds the lowest (0,1); a bowl alone may swallow it. A reading without it stands on one leg. */

@@ -44,6 +44,9 @@ export function namingPriors(construction: Construction): ModelPriors {
   return NAMING[construction] ?? PRIORS[construction]
 }
 
+/** Mean of the edge factor: the film runs on over the edge, half-way between hinged and clamped. */
+export const EDGE_MEAN = 0.5
+
 /** The other head's wave speed squared lies within this of the struck one's, ln, one standard deviation: a fourth either way. */
 export const RATIO_SPREAD = 0.5
 

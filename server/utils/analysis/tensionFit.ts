@@ -1,7 +1,8 @@
 import type { PredictedMode } from '../../../shared/acoustics'
 import type { Candidate } from './hypotheses'
 import type { MatchingContext } from './matchingContext'
-import { RATIO_SPREAD, modeModelError } from './matchingPriors'
+import { UNKNOWN, modeGradient, priorEquations } from './matchingNuisance'
+import { modeModelError } from './matchingPriors'
 import type { ScoreInput, ScoredLine, ScoredMode } from './matchingInput'
 import { assignLines, scoreHypothesis } from './matchingScore'
 import { solveWeighted, type FitRow } from './tensionSolve'
@@ -24,12 +25,13 @@ export interface TensionFit {
   otherTensionNPerM: number
   airScale: { axisymmetric: number, others: number }
   edgeFactor: number
+  state: FitState
   modes: PredictedMode[]
   matched: MatchedLines[]
   /** All rows of the last solution, priors included: what moves ln T and by how much. */
   rows: FitRow[]
-  /** Standard error of ln T by the fit. */
-  lnTensionError: number
+  /** Covariance of the unknowns by the fit, row-major. */
+  covariance: number[]
   /** Log posterior of the hypothesis, up to a constant of the recording. */
   score: number
 }
@@ -39,33 +41,46 @@ export interface FitState {
   lnOther: number
   lnAir: [number, number]
   edge: number
+  /** How far areal density, radius, modulus, density of the air and the other head's areal density lie from what was stated, ln. */
+  inputs: [number, number, number, number, number]
 }
+
+/** A state as the unknowns of the equations, in their order. */
+export const unknownsOf = ({ lnTension, lnOther, lnAir, edge, inputs }: FitState) => [lnTension, lnOther, ...lnAir, edge, ...inputs]
 
 const HIGHEST_M = 8
 const ORDERS = Array.from({ length: HIGHEST_M + 1 }, (_, m) => m)
-const EDGE_MEAN = 0.5
 /** A residual beyond this many standard errors is more likely a wrong name than a bad prediction. */
 const OUTLIER_Z = 3.2
 /** Share of the scan's tolerance that always stays when lines are named. */
-const LEAST_WIDEN = 0.15
+export const LEAST_WIDEN = 0.15
 /** Sensitivities carry the modes over this change of ln T to a part in 10^5. */
 const CLOSE_ENOUGH = 0.002
 /** Largest step in one round, ln. */
 const MOST_STEP = { tension: 0.06, other: 0.25 }
+/** An input farther from what was stated than this is not the input's fault, ln. */
+const MOST_INPUT = 0.3
 
 /** Start of a fit: natural logarithms of both heads' tensions in N/m as the candidate has them, air as predicted, the edge factor at its prior mean. */
 export function stateOf(context: MatchingContext, candidate: Candidate): FitState {
-  return { lnTension: candidate.lnTension, lnOther: candidate.lnTension + context.otherOffset + candidate.ratio, lnAir: [0, 0], edge: EDGE_MEAN }
+  return stateFrom(context, candidate.lnTension, candidate.lnTension + context.otherOffset + candidate.ratio)
 }
 
-function predictAt(context: MatchingContext, state: FitState, maxHz: number, rough: boolean): PredictedMode[] {
+/** A state at two tensions, ln of N/m, with air, edge and inputs at what is known of them before. */
+export function stateFrom({ airScale, edgeFactor }: MatchingContext, lnTension: number, lnOther: number): FitState {
+  return { lnTension, lnOther, lnAir: [Math.log(airScale.axisymmetric), Math.log(airScale.others)], edge: edgeFactor, inputs: [0, 0, 0, 0, 0] }
+}
+
+/** Modes at a state, with the inputs as stated; maxHz in Hz. */
+export function predictAt(context: MatchingContext, state: FitState, maxHz: number, rough: boolean): PredictedMode[] {
   return context.model.predictModes({
     tensionNPerM: Math.exp(state.lnTension), otherTensionNPerM: Math.exp(state.lnOther), maxHz, nodalDiameters: ORDERS, rough,
     airScale: { axisymmetric: Math.exp(state.lnAir[0]), others: Math.exp(state.lnAir[1]) }, edgeFactor: state.edge,
   })
 }
 
-function scoredModes(context: MatchingContext, modes: PredictedMode[], input: ScoreInput, widen: number): ScoredMode[] {
+/** Predicted modes ready to be scored; widen is the share of the scan's tolerance. */
+export function scoredModes(context: MatchingContext, modes: PredictedMode[], input: ScoreInput, widen: number): ScoredMode[] {
   return modes.map((mode) => {
     const scored = input.describe({ m: mode.m, n: mode.n, other: mode.head === 'other', airSensitivity: mode.sensitivity.lnAirScale })
     const own = modeModelError(context.priors, mode.m, mode.n, false)
@@ -73,7 +88,8 @@ function scoredModes(context: MatchingContext, modes: PredictedMode[], input: Sc
   })
 }
 
-function matchedLines(context: MatchingContext, modes: PredictedMode[], input: ScoreInput, assignment: Int16Array): MatchedLines[] {
+/** The modes that lines were assigned to, with their lines, residuals (ln) and weights. */
+export function matchedLines(context: MatchingContext, modes: PredictedMode[], input: ScoreInput, assignment: Int16Array): MatchedLines[] {
   const groups = new Map<number, ScoredLine[]>()
   input.lines.forEach((line, l) => {
     const k = assignment[l]!
@@ -90,40 +106,24 @@ function matchedLines(context: MatchingContext, modes: PredictedMode[], input: S
   })
 }
 
-/** Rows of the least squares: a matched mode each, then the priors. Columns: ln T, ln T_other, ln air m = 0, ln air m >= 1, edge. */
+/** Rows of the least squares: a matched mode each, then the priors. */
 export function fitRows(context: MatchingContext, matched: MatchedLines[], state: FitState): FitRow[] {
-  const rows: FitRow[] = matched.map(({ mode, residual, noise, modelError, weight }) => {
-    const s = mode.sensitivity
-    return {
-      source: { kind: 'mode', noise, modelError },
-      gradient: [s.lnTension, context.twoHeads ? s.lnOtherTension : 0, mode.m === 0 ? s.lnAirScale : 0, mode.m === 0 ? 0 : s.lnAirScale, s.edgeFactor],
-      residual,
-      error: Math.hypot(noise, modelError) / Math.sqrt(Math.max(weight, 1e-4)),
-    }
-  })
-  const { priors } = context
-  const prior = (column: number, residual: number, error: number, kind: 'air' | 'edge' | 'other'): FitRow => ({
-    source: { kind }, gradient: [0, 1, 2, 3, 4].map(c => (c === column ? 1 : 0)), residual, error,
-  })
-  rows.push(
-    prior(1, context.twoHeads ? state.lnTension + context.otherOffset - state.lnOther : 0, context.twoHeads ? RATIO_SPREAD : 1e-3, 'other'),
-    prior(2, -state.lnAir[0], priors.airAxisymmetric, 'air'),
-    prior(3, -state.lnAir[1], priors.airOthers, 'air'),
-    prior(4, EDGE_MEAN - state.edge, priors.edgeFactor, 'edge'),
-  )
-  return rows
+  const rows: FitRow[] = matched.map(({ mode, residual, noise, modelError, weight }) => ({
+    source: { kind: 'mode', noise, modelError },
+    gradient: modeGradient(context, mode, Math.exp(state.lnTension), state.edge),
+    residual,
+    error: Math.hypot(noise, modelError) / Math.sqrt(Math.max(weight, 1e-4)),
+  }))
+  return [...rows, ...priorEquations(context.priorRows, unknownsOf(state))]
 }
 
 const clamp = (value: number, most: number) => Math.min(most, Math.max(-most, value))
 
 /** Modes moved along their sensitivities from where they were predicted: good for steps of a few per cent. */
-function movedModes(modes: PredictedMode[], from: FitState, to: FitState): PredictedMode[] {
-  return modes.map((mode) => {
-    const s = mode.sensitivity
-    const air = mode.m === 0 ? to.lnAir[0] - from.lnAir[0] : to.lnAir[1] - from.lnAir[1]
-    const change = s.lnTension * (to.lnTension - from.lnTension) + s.lnOtherTension * (to.lnOther - from.lnOther) + s.lnAirScale * air + s.edgeFactor * (to.edge - from.edge)
-    return { ...mode, frequencyHz: mode.frequencyHz * Math.exp(change) }
-  })
+export function movedModes(modes: PredictedMode[], gradients: number[][], from: FitState, to: FitState): PredictedMode[] {
+  const start = unknownsOf(from)
+  const step = unknownsOf(to).map((value, i) => value - start[i]!)
+  return modes.map((mode, k) => ({ ...mode, frequencyHz: mode.frequencyHz * Math.exp(gradients[k]!.reduce((sum, g, i) => sum + g * step[i]!, 0)) }))
 }
 
 export interface FitEffort {
@@ -138,8 +138,8 @@ export interface FitEffort {
 }
 
 /**
- * Posterior of ln T for one hypothesis: Gauss-Newton on ln T, the other head's tension, two air scales and the edge
- * factor, with lines named afresh in every round and outliers weighted down.
+ * Posterior of ln T for one hypothesis: Gauss-Newton on ln T, the other head's tension, two air scales, the edge
+ * factor and the maker's own figures, with lines named afresh in every round and outliers weighted down.
  */
 export function fitTension(context: MatchingContext, input: ScoreInput, start: FitState, effort: FitEffort): TensionFit {
   let state = start
@@ -148,14 +148,17 @@ export function fitTension(context: MatchingContext, input: ScoreInput, start: F
   for (let prediction = 0; prediction < effort.predictions; prediction++) {
     const origin = state
     const predicted = predictAt(context, origin, input.maxHz, effort.rough)
-    modes = predicted
+    const gradients = predicted.map(mode => modeGradient(context, mode, Math.exp(origin.lnTension), origin.edge))
+    // The model knows the stated inputs only: what the fit makes of them is put on along the sensitivities.
+    const stated: FitState = { ...origin, inputs: [0, 0, 0, 0, 0] }
+    modes = movedModes(predicted, gradients, stated, origin)
     for (let round = 0; round < effort.rounds; round++) {
       const scored = scoredModes(context, modes, input, widen)
       const matched = matchedLines(context, modes, input, assignLines(scored, input))
       if (matched.length === 0) break
       const { step } = solveWeighted(fitRows(context, matched, state))
-      state = stepped(context, state, step)
-      modes = movedModes(predicted, origin, state)
+      state = moved(context, state, step)
+      modes = movedModes(predicted, gradients, stated, state)
       widen = Math.max(LEAST_WIDEN, widen / 2)
       if (Math.abs(step[0]!) < 1e-6) break
     }
@@ -164,14 +167,16 @@ export function fitTension(context: MatchingContext, input: ScoreInput, start: F
   return summarise(context, input, state, modes)
 }
 
-function stepped(context: MatchingContext, state: FitState, step: number[]): FitState {
+/** A state after a step of the equations (ln of N/m and of the inputs, dimensionless), in their order of unknowns; steps are held to what the equations are good for. */
+export function moved(context: MatchingContext, state: FitState, step: number[]): FitState {
   const { priors, twoHeads } = context
-  const lnTension = state.lnTension + clamp(step[0]!, MOST_STEP.tension)
+  const lnTension = state.lnTension + clamp(step[UNKNOWN.tension]!, MOST_STEP.tension)
   return {
     lnTension,
-    lnOther: twoHeads ? state.lnOther + clamp(step[1]!, MOST_STEP.other) : lnTension,
-    lnAir: [clamp(state.lnAir[0] + step[2]!, 4 * priors.airAxisymmetric), clamp(state.lnAir[1] + step[3]!, 4 * priors.airOthers)],
-    edge: Math.min(1, Math.max(0, state.edge + clamp(step[4]!, 0.3))),
+    lnOther: twoHeads ? state.lnOther + clamp(step[UNKNOWN.other]!, MOST_STEP.other) : lnTension,
+    lnAir: [clamp(state.lnAir[0] + step[UNKNOWN.airAxisymmetric]!, 4 * priors.airAxisymmetric), clamp(state.lnAir[1] + step[UNKNOWN.airOthers]!, 4 * priors.airOthers)],
+    edge: Math.min(1, Math.max(0, state.edge + clamp(step[UNKNOWN.edge]!, 0.3))),
+    inputs: state.inputs.map((value, i) => clamp(value + step[UNKNOWN.density + i]!, MOST_INPUT)) as FitState['inputs'],
   }
 }
 
@@ -188,9 +193,8 @@ function summarise(context: MatchingContext, input: ScoreInput, state: FitState,
     otherTensionNPerM: Math.exp(state.lnOther),
     airScale: { axisymmetric: Math.exp(state.lnAir[0]), others: Math.exp(state.lnAir[1]) },
     edgeFactor: state.edge,
-    modes, matched, rows,
-    lnTensionError: Math.sqrt(covariance[0]!),
-    // Laplace's approximation over all five unknowns: a hypothesis that needs fine tuning is worth less.
+    state, modes, matched, rows, covariance,
+    // Laplace's approximation over all unknowns: a hypothesis that needs fine tuning is worth less.
     score: scoreHypothesis(scored, input, assignment) - priorCost + 0.5 * lnDeterminant,
   }
 }

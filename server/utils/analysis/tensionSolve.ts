@@ -1,6 +1,8 @@
+import type { PriorKind } from './matchingNuisance'
+
 /** One equation of the fit: gradient . step = residual, with its standard error. */
 export interface FitRow {
-  source: { kind: 'mode', noise: number, modelError: number } | { kind: 'air' | 'edge' | 'other' }
+  source: { kind: 'mode', noise: number, modelError: number } | { kind: PriorKind }
   gradient: number[]
   residual: number
   error: number
@@ -19,7 +21,7 @@ export interface FitSolution {
 const LEAST_INFORMATION = 1e-6
 
 /**
- * Weighted least squares by the normal equations: five unknowns, some twenty rows.
+ * Weighted least squares by the normal equations: ten unknowns, some thirty rows.
  *
  *   C = (G^T W G)^-1,  step = C G^T W r,  gain of row i on unknown 0 = (C G^T)_0i W_i
  *
@@ -40,8 +42,14 @@ export function solveWeighted(rows: FitRow[]): FitSolution {
   for (let i = 0; i < size; i++) information[i * size + i] = information[i * size + i]! + LEAST_INFORMATION
   const { inverse, lnDeterminant } = invertPositive(size, information)
   const step = Array.from({ length: size }, (_, i) => right.reduce((sum, value, j) => sum + inverse[i * size + j]! * value, 0))
-  const gains = rows.map(({ gradient, error }) => gradient.reduce((sum, g, j) => sum + inverse[j]! * g, 0) / (error * error))
-  return { step, covariance: Array.from(inverse), lnDeterminant: -lnDeterminant, gains }
+  const covariance = Array.from(inverse)
+  return { step, covariance, lnDeterminant: -lnDeterminant, gains: gainsOn(0, rows, covariance) }
+}
+
+/** What a change of each row's left side does to one unknown: d step_column / d residual_row. */
+export function gainsOn(column: number, rows: FitRow[], covariance: number[]): number[] {
+  const size = rows[0]!.gradient.length
+  return rows.map(({ gradient, error }) => gradient.reduce((sum, g, j) => sum + covariance[column * size + j]! * g, 0) / (error * error))
 }
 
 /** Inverse and ln of the determinant of a symmetric positive definite matrix, by Gauss-Jordan without pivoting. */

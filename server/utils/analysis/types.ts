@@ -1,11 +1,11 @@
 /** What goes into and comes out of the analysis. Plain data: it crosses a thread boundary and is stored as JSON. */
 
-import type { AnalysedReading, Refusal, SoundFacts } from '../../../shared/types/reading'
+import type { AnalysedReading, HeadCalibration, HeadSide, Refusal, SoundFacts } from '../../../shared/types/reading'
 
-export type { AnalysedReading, BudgetLine, MatchedMode, ReadingWarning, Refusal, RefusalCode, RodTension, SoundFacts, UnexplainedPeak } from '../../../shared/types/reading'
+export type { AnalysedReading, BudgetLine, MatchedMode, ReadingWarning, Refusal, RefusalCode, RodTension, SoundFacts, TwoHeads, UnexplainedPeak } from '../../../shared/types/reading'
 
 export type Construction = 'open' | 'frame' | 'double-headed' | 'kettle' | 'fixture'
-export type HeadSide = 'batter' | 'resonant'
+export type { HeadCalibration, HeadSide }
 export type Strike = 'centre' | 'edge' | 'round'
 
 /** One head as the analysis sees it; SI. */
@@ -34,6 +34,18 @@ export interface AnalysedInstrument {
   bowlVolumeM3?: number
   rodCount: number
   heads: AnalysedHead[]
+  /** What the maker measured better than by tape and data sheet; of the struck head. */
+  uncertainty?: InputUncertainty
+  /** What a reading at a known tension taught of this instrument with the struck head on it. */
+  calibration?: HeadCalibration
+}
+
+/** Standard uncertainties of the maker's figures. */
+export interface InputUncertainty {
+  /** Of the vibrating diameter, mm; 0.1 % of it where left out. */
+  diameterMm?: number
+  /** Of the struck head's areal density, as a share of it; 0.01 where left out. */
+  arealDensityRelative?: number
 }
 
 export interface AnalysisRequest {

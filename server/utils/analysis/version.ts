@@ -1,2 +1,2 @@
 /** Names the rules by which a reading was made; raise it when the same recording would give another reading. */
-export const ANALYSIS_VERSION = '1.0.0'
+export const ANALYSIS_VERSION = '1.1.0'
