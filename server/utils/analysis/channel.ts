@@ -1,4 +1,4 @@
-import type { DecodedSound } from './wav'
+import { samplesOf, type DecodedSound, type SoundChannel } from './wav'
 
 export interface MonoSound {
   sampleRateHz: number
@@ -20,61 +20,65 @@ const COHERENT = 0.95
 export function chooseChannel(sound: DecodedSound): MonoSound {
   const stats = sound.channels.map(measure)
   const peak = Math.max(...stats.map(s => s.peak))
-  if (sound.channels.length === 1) return finish(sound.channels[0]!, sound.sampleRateHz, peak)
-  const [left, right] = sound.channels as [Float32Array, Float32Array]
+  if (sound.channels.length === 1) return finish(samplesOf(sound.channels[0]!), sound.sampleRateHz, peak)
+  const [left, right] = sound.channels as [SoundChannel, SoundChannel]
   const [a, b] = stats as [ChannelStats, ChannelStats]
   const bothClean = a.atRail < 3 && b.atRail < 3
-  if (bothClean && correlation(left, right, a, b) > COHERENT) {
-    const mean = new Float32Array(left.length)
-    for (let i = 0; i < mean.length; i++) mean[i] = (left[i]! + right[i]!) / 2
-    return finish(mean, sound.sampleRateHz, peak)
-  }
+  if (bothClean && correlation(left, right, a, b) > COHERENT) return finish(meanOf(left, right), sound.sampleRateHz, peak)
   const audible = 0.03 // a channel 30 dB below the other is a bleed, not a choice
   const oneClips = (a.atRail >= 3) !== (b.atRail >= 3)
   const preferLeft = oneClips && Math.min(a.power, b.power) > audible ** 2 * Math.max(a.power, b.power)
     ? a.atRail < b.atRail
     : a.power >= b.power
-  return finish(preferLeft ? left : right, sound.sampleRateHz, peak)
+  return finish(samplesOf(preferLeft ? left : right), sound.sampleRateHz, peak)
 }
 
 interface ChannelStats { peak: number, mean: number, power: number, atRail: number }
 
-function measure(samples: Float32Array): ChannelStats {
+function measure({ values, first, every, zero, scale, length }: SoundChannel): ChannelStats {
   let peak = 0
   let sum = 0
   let squares = 0
   let atRail = 0
-  for (let i = 0; i < samples.length; i++) {
-    const x = samples[i]!
+  for (let i = 0, j = first; i < length; i++, j += every) {
+    const x = (values[j]! - zero) * scale
     const abs = Math.abs(x)
     if (abs > peak) peak = abs
     if (abs >= 0.999) atRail++
     sum += x
     squares += x * x
   }
-  const n = Math.max(1, samples.length)
+  const n = Math.max(1, length)
   return { peak, mean: sum / n, power: squares / n - (sum / n) ** 2, atRail }
 }
 
-function correlation(left: Float32Array, right: Float32Array, a: ChannelStats, b: ChannelStats): number {
+function correlation(left: SoundChannel, right: SoundChannel, a: ChannelStats, b: ChannelStats): number {
+  const { values, zero, scale, length } = left
   let cross = 0
-  for (let i = 0; i < left.length; i++) cross += (left[i]! - a.mean) * (right[i]! - b.mean)
-  const norm = left.length * Math.sqrt(a.power * b.power)
+  for (let i = 0, j = 0; i < length; i++, j += 2) cross += ((values[j]! - zero) * scale - a.mean) * ((values[j + 1]! - zero) * scale - b.mean)
+  const norm = length * Math.sqrt(a.power * b.power)
   return norm > 0 ? cross / norm : 0
 }
 
-function finish(channel: Float32Array, sampleRateHz: number, peak: number): MonoSound {
+function meanOf(left: SoundChannel, right: SoundChannel): Float32Array {
+  const { values, zero, scale, length } = left
+  const out = new Float32Array(length)
+  for (let i = 0; i < length; i++) out[i] = ((values[left.first + 2 * i]! + values[right.first + 2 * i]!) / 2 - zero) * scale
+  return out
+}
+
+/** Takes the mean off, in place. */
+function finish(samples: Float32Array, sampleRateHz: number, peak: number): MonoSound {
   let low = Infinity
   let high = -Infinity
   let sum = 0
-  for (let i = 0; i < channel.length; i++) {
-    const x = channel[i]!
+  for (let i = 0; i < samples.length; i++) {
+    const x = samples[i]!
     if (x < low) low = x
     if (x > high) high = x
     sum += x
   }
-  const offset = sum / Math.max(1, channel.length)
-  const samples = new Float32Array(channel.length)
-  for (let i = 0; i < samples.length; i++) samples[i] = channel[i]! - offset
+  const offset = sum / Math.max(1, samples.length)
+  for (let i = 0; i < samples.length; i++) samples[i]! -= offset
   return { sampleRateHz, samples, peak, rails: { low, high, offset } }
 }

@@ -2,16 +2,29 @@ import * as wavefile from 'wavefile'
 import { RefusalError } from './refusal'
 import { findSound, type RiffSound } from './riff'
 
+/** One channel as it lies in the file: sample i is (values[first + every * i] - zero) * scale, full scale = 1. */
+export interface SoundChannel {
+  values: Uint8Array | Int16Array | Int32Array | Float32Array | Float64Array
+  first: number
+  every: number
+  zero: number
+  scale: number
+  length: number
+}
+
 export interface DecodedSound {
   sampleRateHz: number
-  /** One array a channel, full scale = 1; float files may go beyond. */
-  channels: Float32Array[]
+  /** Float files may go beyond full scale. */
+  channels: SoundChannel[]
   /** As a person would say it: '16 bit', '32 bit float'. */
   bitDepth: string
   durationS: number
 }
 
-interface ParsedWave { data: { samples: Uint8Array } }
+interface ParsedWave { fmt: { numChannels: number, sampleRate: number, bitsPerSample: number } }
+/** Blocks that wavefile is shown. */
+const OPENING_BLOCKS = 4096
+
 type WaveFileClass = new (bytes: Uint8Array) => ParsedWave
 
 // The package is CommonJS to Node and to the worker's bundler, a true module to Vite: take the class from where it is.
@@ -21,31 +34,38 @@ const WaveFile = (loaded.WaveFile ?? loaded.default?.WaveFile) as WaveFileClass
 /**
  * Reads a WAV file: PCM of 8, 16, 24 or 32 bit, float of 32 or 64 bit, plain or extensible header, one or two channels.
  *
- * wavefile sees only a two-chunk file rebuilt from checked figures (riff.ts says why); its sample bytes are then read through
- * a typed view, which takes milliseconds where its own getSamples takes up to half a second.
+ * wavefile sees only a two-chunk file rebuilt from checked figures (riff.ts says why) with the first moments of the sound;
+ * all of it is then read through a typed view of the upload's own bytes, since two minutes in stereo are too large to be
+ * held twice.
  * @throws RefusalError not-wav, too-large, low-rate, too-short
  */
 export function readWav(bytes: Uint8Array): DecodedSound {
   const sound = findSound(bytes)
-  const samples = new WaveFile(plainFile(bytes, sound)).data.samples
-  const interleaved = normalise(samples, sound)
-  for (let i = 0; i < interleaved.length; i++) {
-    if (!Number.isFinite(interleaved[i]!)) throw new RefusalError('not-wav', 'The WAV file holds values that are not numbers. Save it as 16 or 24 bit and send it again.')
-  }
-  const frames = interleaved.length / sound.channels
+  const { numChannels, sampleRate, bitsPerSample } = new WaveFile(openingFile(bytes, sound)).fmt
+  const { values, zero, scale } = valuesOf(bytes, sound)
+  const length = values.length / numChannels
+  if (sound.float && !allFinite(values)) throw new RefusalError('not-wav', 'The WAV file holds values that are not numbers. Save it as 16 or 24 bit and send it again.')
   return {
-    sampleRateHz: sound.sampleRateHz,
-    channels: sound.channels === 1 ? [interleaved] : [everySecond(interleaved, 0), everySecond(interleaved, 1)],
-    bitDepth: `${sound.bitsPerSample} bit${sound.float ? ' float' : ''}`,
-    durationS: frames / sound.sampleRateHz,
+    sampleRateHz: sampleRate,
+    channels: Array.from({ length: numChannels }, (_, first) => ({ values, first, every: numChannels, zero, scale, length })),
+    bitDepth: `${bitsPerSample} bit${sound.float ? ' float' : ''}`,
+    durationS: length / sampleRate,
   }
 }
 
-/** A file of just `fmt ` and `data`, the format code plain even where the original was extensible. */
-function plainFile(bytes: Uint8Array, sound: RiffSound): Uint8Array {
-  const out = new Uint8Array(44 + sound.dataBytes + (sound.dataBytes & 1))
-  const view = new DataView(out.buffer)
+/** A channel's samples, full scale = 1. */
+export function samplesOf({ values, first, every, zero, scale, length }: SoundChannel): Float32Array {
+  const out = new Float32Array(length)
+  for (let i = 0, j = first; i < length; i++, j += every) out[i] = (values[j]! - zero) * scale
+  return out
+}
+
+/** A file of just `fmt ` and the opening of `data`, the format code plain even where the original was extensible. */
+function openingFile(bytes: Uint8Array, sound: RiffSound): Uint8Array {
   const blockBytes = sound.channels * sound.bitsPerSample / 8
+  const dataBytes = Math.min(sound.dataBytes, OPENING_BLOCKS * blockBytes)
+  const out = new Uint8Array(44 + dataBytes + (dataBytes & 1))
+  const view = new DataView(out.buffer)
   const write = (at: number, text: string) => out.set([...text].map(c => c.charCodeAt(0)), at)
   write(0, 'RIFF')
   view.setUint32(4, out.length - 8, true)
@@ -58,32 +78,28 @@ function plainFile(bytes: Uint8Array, sound: RiffSound): Uint8Array {
   view.setUint16(32, blockBytes, true)
   view.setUint16(34, sound.bitsPerSample, true)
   write(36, 'data')
-  view.setUint32(40, sound.dataBytes, true)
-  out.set(bytes.subarray(sound.dataStart, sound.dataStart + sound.dataBytes), 44)
+  view.setUint32(40, dataBytes, true)
+  out.set(bytes.subarray(sound.dataStart, sound.dataStart + dataBytes), 44)
   return out
 }
 
-/** Little-endian sample bytes to numbers with full scale 1: integers divide by 2^(bits - 1); 8 bit is offset binary. */
-function normalise(samples: Uint8Array, sound: RiffSound): Float32Array {
+/** Little-endian sample bytes as numbers: integers reach 2^(bits - 1) at full scale; 8 bit is offset binary. */
+function valuesOf(bytes: Uint8Array, sound: RiffSound): Pick<SoundChannel, 'values' | 'zero' | 'scale'> {
   const step = sound.bitsPerSample / 8
-  const count = Math.floor(Math.min(samples.byteLength, sound.dataBytes) / step)
-  const aligned = samples.byteOffset % 8 === 0 ? samples : samples.slice()
-  const { buffer, byteOffset } = aligned
-  if (sound.float) return Float32Array.from(sound.bitsPerSample === 32 ? new Float32Array(buffer, byteOffset, count) : new Float64Array(buffer, byteOffset, count))
-  const out = new Float32Array(count)
-  if (step === 1) for (let i = 0; i < count; i++) out[i] = (aligned[i]! - 128) / 128
-  else if (step === 2) scale(out, new Int16Array(buffer, byteOffset, count), 2 ** -15)
-  else if (step === 4) scale(out, new Int32Array(buffer, byteOffset, count), 2 ** -31)
-  else for (let i = 0, b = 0; i < count; i++, b += 3) out[i] = (aligned[b]! << 8 | aligned[b + 1]! << 16 | aligned[b + 2]! << 24) * 2 ** -31
-  return out
+  const data = bytes.subarray(sound.dataStart, sound.dataStart + sound.dataBytes)
+  const count = data.length / step
+  if (step === 1) return { values: data, zero: 128, scale: 1 / 128 }
+  if (step === 3) {
+    const values = new Int32Array(count)
+    for (let i = 0, j = 0; i < count; i++, j += 3) values[i] = data[j]! << 8 | data[j + 1]! << 16 | data[j + 2]! << 24
+    return { values, zero: 0, scale: 2 ** -31 }
+  }
+  const { buffer, byteOffset } = data.byteOffset % step === 0 ? data : new Uint8Array(data)
+  if (sound.float) return { values: step === 4 ? new Float32Array(buffer, byteOffset, count) : new Float64Array(buffer, byteOffset, count), zero: 0, scale: 1 }
+  return step === 2 ? { values: new Int16Array(buffer, byteOffset, count), zero: 0, scale: 2 ** -15 } : { values: new Int32Array(buffer, byteOffset, count), zero: 0, scale: 2 ** -31 }
 }
 
-function scale(out: Float32Array, from: Int16Array | Int32Array, by: number) {
-  for (let i = 0; i < out.length; i++) out[i] = from[i]! * by
-}
-
-function everySecond(interleaved: Float32Array, offset: number): Float32Array {
-  const out = new Float32Array(interleaved.length / 2)
-  for (let i = 0; i < out.length; i++) out[i] = interleaved[2 * i + offset]!
-  return out
+function allFinite(values: ArrayLike<number>): boolean {
+  for (let i = 0; i < values.length; i++) if (!Number.isFinite(values[i]!)) return false
+  return true
 }
