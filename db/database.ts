@@ -2,6 +2,7 @@ import { Kysely, PostgresDialect } from 'kysely'
 import pg from 'pg'
 import type { AuditEventsTable, SessionsTable, SettingsTable, UsersTable, UserTokensTable } from './people.table'
 import type { FilmsTable, HeadsTable, InstrumentsTable } from './instruments.table'
+import type { CalibrationsTable, EarlierFilmsTable, JointReadingsTable, RereadingRunsTable } from './rereading.table'
 import type { ReadingsTable, RecordingsTable, TurnSheetsTable } from './readings.table'
 import type {
   HeadSpecsTable, OrderHeadsTable, OrderHistoryTable, OrdersTable, PaymentsTable, PriceListsTable, RefundsTable, WebhookEventsTable,
@@ -19,6 +20,10 @@ export interface DB {
   recordings: RecordingsTable
   readings: ReadingsTable
   turn_sheets: TurnSheetsTable
+  earlier_films: EarlierFilmsTable
+  calibrations: CalibrationsTable
+  rereading_runs: RereadingRunsTable
+  joint_readings: JointReadingsTable
   price_lists: PriceListsTable
   head_specs: HeadSpecsTable
   orders: OrdersTable

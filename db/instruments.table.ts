@@ -1,6 +1,7 @@
 import type { ColumnType, Generated, Insertable, Selectable, Updateable } from 'kysely'
 
 type CreatedAt = ColumnType<Date, Date | undefined, never>
+type Maybe<T> = ColumnType<T | null, T | null | undefined, T | null>
 
 export interface FilmsTable {
   /** A short readable key, e.g. 'pet-250'. */
@@ -29,6 +30,8 @@ export interface InstrumentsTable {
   name: string
   construction: 'open' | 'frame' | 'double-headed' | 'kettle' | 'fixture'
   diameter_mm: number
+  /** What the maker's measure of it may be off, 95 %; null: a tape's. */
+  diameter_u95_mm: Maybe<number>
   depth_mm: number
   bowl_volume_l: number | null
   rod_count: number
@@ -59,6 +62,10 @@ export interface HeadsTable {
   poisson: number
   yield_mpa: number
   areal_density_kg_m2: number
+  /** What it may be off, 95 %; null: a data sheet's. */
+  areal_density_u95_kg_m2: Maybe<number>
+  /** FilmWeighingInput of shared/schemas/weighing.ts, when the density was weighed. */
+  weighing: ColumnType<unknown, string | null | undefined, string | null>
   coating: string | null
   /** Learned share of the ideal tension rise per turn, with its variance and how many passes taught it. */
   kappa: number | null
@@ -66,6 +73,8 @@ export interface HeadsTable {
   kappa_passes: Generated<number>
   /** When this film was mounted; readings before it say nothing of how its rods pull. */
   film_since: Generated<Date>
+  /** When a figure that readings rest on was last changed: film, size, weighing, calibration. */
+  figures_since: Generated<Date>
   created_at: CreatedAt
 }
 export type HeadRow = Selectable<HeadsTable>

@@ -2,6 +2,7 @@ import type { ColumnType, Generated, Insertable, Selectable } from 'kysely'
 
 type CreatedAt = ColumnType<Date, Date | undefined, never>
 type Json<T> = ColumnType<T, string, string>
+type Maybe<T> = ColumnType<T | null, T | null | undefined, T | null>
 
 export interface RecordingsTable {
   id: Generated<string>
@@ -28,6 +29,12 @@ export interface RecordingsTable {
   /** SoundFacts of server/utils/analysis/types.ts. */
   sound: Json<unknown>
   recorded_at: Date
+  /** Of the last analysis; null: from before versions were kept. */
+  analysis_version: Maybe<string>
+  /** When the figures of the last analysis were taken. */
+  analysed_at: Generated<Date>
+  /** RereadRefusal of shared/schemas/reading.ts: what a later version said of a recording that an earlier one had read. */
+  reread_refusal: ColumnType<unknown, string | null | undefined, string | null>
   created_at: CreatedAt
 }
 export type RecordingRow = Selectable<RecordingsTable>
@@ -52,6 +59,9 @@ export interface ReadingsTable {
   /** AnalysedReading of server/utils/analysis/types.ts, whole. */
   detail: Json<unknown>
   analysis_version: string
+  /** Null for the newest reading of its recording. */
+  superseded_at: Maybe<Date>
+  calibration_id: Maybe<string>
   created_at: CreatedAt
 }
 export type ReadingRow = Selectable<ReadingsTable>

@@ -10,7 +10,8 @@ type Suggested = 'diameterMm' | 'depthMm' | 'bowlVolumeL' | 'rodCount'
  * overwritten. Errors stand by field path, as the route writes them.
  */
 export function useInstrumentForm(films: Ref<readonly FilmView[]>, start?: InstrumentDraft) {
-  const draft = reactive(start ?? startDraft('double-headed', films.value))
+  // A copy: the form still has to tell what was changed.
+  const draft = reactive(start ? { ...start, heads: start.heads.map(head => ({ ...head })) } : startDraft('double-headed', films.value))
   const typed = new Set<Suggested>(start ? ['diameterMm', 'depthMm', 'bowlVolumeL', 'rodCount'] : [])
   const errors = ref<Record<string, string>>({})
   const changed = ref(false)

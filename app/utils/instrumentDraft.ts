@@ -1,4 +1,5 @@
 import type { FilmView, HeadView, InstrumentInput, InstrumentView } from '#shared/schemas/instrument'
+import type { FilmWeighingInput } from '#shared/schemas/weighing'
 import type { ConstructionValue } from './words'
 
 /** 1/24 in, the pitch of a 12-24 UNC rod (ASME B1.1). */
@@ -17,13 +18,20 @@ export interface HeadDraft {
   poisson: number | null
   yieldMPa: number | null
   arealDensityKgM2: number | null
+  /** 95 %; null: a data sheet's. */
+  arealDensityU95KgM2: number | null
+  weighing: FilmWeighingInput | null
   coating: string
+  /** Of a head that is there already: whether changed figures are of the same film. Null: as the change suggests. */
+  sameFilm: boolean | null
 }
 
 export interface InstrumentDraft {
   name: string
   construction: ConstructionValue
   diameterMm: number | null
+  /** 95 %; null: a tape's. */
+  diameterU95Mm: number | null
   depthMm: number | null
   bowlVolumeL: number | null
   rodCount: number | null
@@ -61,21 +69,21 @@ export function usualDepthMm(construction: ConstructionValue, diameterMm: number
 }
 
 export function emptyHead(side: HeadDraft['side']): HeadDraft {
-  return { side, filmId: '', material: 'pet', plies: 1, thicknessUm: null, densityKgM3: null, modulusGPa: null, poisson: null, yieldMPa: null, arealDensityKgM2: null, coating: '' }
+  return { side, filmId: '', material: 'pet', plies: 1, thicknessUm: null, densityKgM3: null, modulusGPa: null, poisson: null, yieldMPa: null, arealDensityKgM2: null, arealDensityU95KgM2: null, weighing: null, coating: '', sameFilm: null }
 }
 
 /** The catalogue's film, figure by figure, into a head. */
 export function takeFilm(head: HeadDraft, film: FilmView): void {
   Object.assign(head, {
     filmId: film.id, material: film.material, plies: film.plies, thicknessUm: film.thicknessUm, densityKgM3: film.densityKgM3,
-    modulusGPa: film.modulusGPa, poisson: film.poisson, yieldMPa: film.yieldMPa, arealDensityKgM2: film.arealDensityKgM2, coating: film.coating ?? '',
+    modulusGPa: film.modulusGPa, poisson: film.poisson, yieldMPa: film.yieldMPa, arealDensityKgM2: film.arealDensityKgM2, arealDensityU95KgM2: null, weighing: null, coating: film.coating ?? '',
   })
 }
 
 export function startDraft(construction: ConstructionValue, films: readonly FilmView[]): InstrumentDraft {
   const start = START[construction]
   const draft: InstrumentDraft = {
-    ...start, name: '', construction, bowlVolumeL: construction === 'kettle' ? bowlVolumeL(start.diameterMm) : null, hoop: '', note: '', customerId: null,
+    ...start, diameterU95Mm: null, name: '', construction, bowlVolumeL: construction === 'kettle' ? bowlVolumeL(start.diameterMm) : null, hoop: '', note: '', customerId: null,
     heads: (construction === 'double-headed' ? ['batter', 'resonant'] as const : ['batter'] as const).map(emptyHead),
   }
   for (const head of draft.heads) {
@@ -93,12 +101,12 @@ export function usualFilm(films: readonly FilmView[], side: HeadDraft['side']): 
 }
 
 export function headDraftOf(head: HeadView): HeadDraft {
-  return { side: head.side, filmId: head.filmId ?? '', ...head.film, arealDensityKgM2: head.arealDensityKgM2, coating: head.coating ?? '' }
+  return { side: head.side, filmId: head.filmId ?? '', ...head.film, arealDensityKgM2: head.arealDensityKgM2, arealDensityU95KgM2: head.arealDensityU95KgM2, weighing: head.weighing, coating: head.coating ?? '', sameFilm: null }
 }
 
 export function draftOf(instrument: InstrumentView): InstrumentDraft {
-  const { name, construction, diameterMm, depthMm, bowlVolumeL, rodCount, threadPitchMm, customerId } = instrument
-  return { name, construction, diameterMm, depthMm, bowlVolumeL, rodCount, threadPitchMm, customerId, hoop: instrument.hoop ?? '', note: instrument.note ?? '', heads: instrument.heads.map(headDraftOf) }
+  const { name, construction, diameterMm, diameterU95Mm, depthMm, bowlVolumeL, rodCount, threadPitchMm, customerId } = instrument
+  return { name, construction, diameterMm, diameterU95Mm, depthMm, bowlVolumeL, rodCount, threadPitchMm, customerId, hoop: instrument.hoop ?? '', note: instrument.note ?? '', heads: instrument.heads.map(headDraftOf) }
 }
 
 /** As the route takes it; an empty number becomes NaN so that the schema says what is missing. */
@@ -112,6 +120,8 @@ export function bodyOfHead(head: HeadDraft): InstrumentInput['heads'][number] {
       modulusGPa: number(head.modulusGPa), poisson: number(head.poisson), yieldMPa: number(head.yieldMPa),
     },
     arealDensityKgM2: head.arealDensityKgM2,
+    arealDensityU95KgM2: head.arealDensityU95KgM2,
+    weighing: head.weighing,
     coating: head.coating || null,
   }
 }
@@ -119,8 +129,13 @@ export function bodyOfHead(head: HeadDraft): InstrumentInput['heads'][number] {
 export function bodyOf(draft: InstrumentDraft): InstrumentInput {
   const number = (value: number | null) => value ?? Number.NaN
   return {
-    name: draft.name, construction: draft.construction, diameterMm: number(draft.diameterMm), depthMm: number(draft.depthMm),
+    name: draft.name, construction: draft.construction, diameterMm: number(draft.diameterMm), diameterU95Mm: draft.diameterU95Mm, depthMm: number(draft.depthMm),
     bowlVolumeL: draft.construction === 'kettle' ? draft.bowlVolumeL : null, rodCount: number(draft.rodCount), threadPitchMm: number(draft.threadPitchMm),
     hoop: draft.hoop || null, note: draft.note || null, customerId: draft.customerId || null, heads: draft.heads.map(bodyOfHead),
   }
+}
+
+/** Whether a head's changed figures are of the same film: what it is made of and how thick it is stays, its mass is better known. */
+export function looksLikeSameFilm(before: HeadDraft, now: HeadDraft): boolean {
+  return (['material', 'plies', 'thicknessUm', 'coating'] as const).every(field => before[field] === now[field])
 }

@@ -25,6 +25,19 @@ export const THICKNESS: Measure = {
   si: '\u00B5m',
 }
 
+/** How far off a length may be. */
+export const LENGTH_ERROR: Measure = {
+  units: [{ name: 'mm', perStored: 1, decimals: 2 }, { name: 'in', perStored: 1 / MM_PER_INCH, decimals: 4 }],
+  trade: 'in',
+  si: 'mm',
+}
+/** Pieces of film are cut by the millimetre or by the inch. */
+export const MASS: Measure = {
+  units: [{ name: 'g', perStored: 1, decimals: 3 }, { name: 'oz', perStored: 1 / 28.349_523, decimals: 4 }],
+  trade: 'g',
+  si: 'g',
+}
+
 /** Advance of a rod in one turn; trade threads are counted in turns per inch, which is no linear unit, so mm and in stand. */
 export const THREAD: Measure = {
   units: [{ name: 'mm', perStored: 1, decimals: 3 }, { name: 'in', perStored: 1 / MM_PER_INCH, decimals: 4 }],

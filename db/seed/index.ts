@@ -10,11 +10,14 @@ import { ensureFilms } from './films'
 import { type DemoDrum, demoDrums } from './instruments'
 import { DEMO_PASSWORD, demoPeople } from './people'
 import { seededRandom } from './random'
+import type { Visit } from './calendar'
 import { type Bench, type HeadHistory, playHistory } from './readings'
 
 /** Rows of `settings` that say how far the demo has come. */
 export const DEMO_STARTED = 'demo-started'
 export const DEMO_LOADED = 'demo-loaded'
+
+interface DrumHistory { batter: HeadHistory, resonant?: HeadHistory }
 
 /** Heads played at once: enough to keep two analysis threads busy. */
 const LANES = 3
@@ -33,17 +36,18 @@ export async function seedPeople(db: Kysely<DB>): Promise<Map<string, SignedInUs
 export async function seedBench(bench: Bench, people: Map<string, SignedInUser>): Promise<{ instruments: number, readings: number }> {
   await ensureFilms(bench.db)
   const films = new Map((await bench.db.selectFrom('films').selectAll().execute()).map(film => [film.id, film]))
-  const histories: { history: HeadHistory, seed: number }[] = []
+  const histories: (DrumHistory & { seed: number })[] = []
   for (const [index, drum] of demoDrums.entries()) {
     const view = await createInstrument(bench.db, toBody(drum, films, people), bench.makers[0]!, new Date(bench.now.getTime() - 735 * 24 * 3600_000))
-    histories.push(...headHistories(drum, view).map((history, side) => ({ history, seed: 1000 + 10 * index + side })))
+    histories.push({ ...drumHistory(drum, view), seed: 1000 + 10 * index })
   }
   let readings = 0
   const queue = [...histories]
   await Promise.all(Array.from({ length: LANES }, async () => {
     for (let next = queue.shift(); next; next = queue.shift()) {
-      const kept = await playHistory(bench, next.history, seededRandom(next.seed))
+      const { kept, last } = await playHistory(bench, next.batter, seededRandom(next.seed))
       readings += kept
+      if (next.resonant && last) readings += await sameSitting(bench, next.resonant, last, next.seed + 1)
     }
   }))
   await chooseShowcase(bench.db)
@@ -51,11 +55,16 @@ export async function seedBench(bench: Bench, people: Map<string, SignedInUser>)
 }
 
 /** Two heads cost the analysis ten times what one does, and the demo is to stand within a minute: fewer visits for them. */
-function headHistories(drum: DemoDrum, view: InstrumentView): HeadHistory[] {
+function drumHistory(drum: DemoDrum, view: InstrumentView): DrumHistory {
   const head = (side: 'batter' | 'resonant') => view.heads.find(candidate => candidate.side === side)!.id
   const batter: HeadHistory = { headId: head('batter'), drum, wantedNPerM: drum.tensionNPerM, otherNPerM: drum.resonant?.tensionNPerM, visits: drum.resonant ? 3 : drum.owner ? 7 : 4 }
-  if (!drum.resonant) return [batter]
-  return [batter, { headId: head('resonant'), drum, wantedNPerM: drum.resonant.tensionNPerM, otherNPerM: drum.tensionNPerM, visits: 1 }]
+  return { batter, resonant: drum.resonant && { headId: head('resonant'), drum, wantedNPerM: drum.resonant.tensionNPerM, visits: 1 } }
+}
+
+/** The resonant head is tapped minutes before the batter's last visit, so that both can be read together. */
+async function sameSitting(bench: Bench, history: HeadHistory, batter: Visit, seed: number): Promise<number> {
+  const visit = { at: new Date(batter.at.getTime() - 3 * 60_000), tensionNPerM: history.wantedNPerM, temperatureC: batter.temperatureC, retuned: false }
+  return (await playHistory(bench, { ...history, otherNPerM: batter.tensionNPerM }, seededRandom(seed), [visit])).kept
 }
 
 function toBody(drum: DemoDrum, films: Map<string, FilmRow>, people: Map<string, SignedInUser>): InstrumentBody {

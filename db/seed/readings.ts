@@ -23,13 +23,17 @@ const FILM_LOSS = { pet: 0.008, skin: 0.02, woven: 0.014, other: 0.012 } as cons
 /** Skins creep and follow the weather; PET holds (common practice, no source). */
 const YEARLY_LOSS = { pet: 0.09, skin: 0.2, woven: 0.12, other: 0.1 } as const
 
-/** Plays two years of one head's visits: each a simulated tap that goes through the real analysis, turned where it had drifted. */
-export async function playHistory(bench: Bench, history: HeadHistory, random: SeededRandom): Promise<number> {
+/**
+ * Plays two years of one head's visits: each a simulated tap that goes through the real analysis, turned where it had drifted.
+ * @param given  these visits in place of two years of them
+ * @returns how many readings were kept, and the last visit
+ */
+export async function playHistory(bench: Bench, history: HeadHistory, random: SeededRandom, given?: Visit[]): Promise<{ kept: number, last: Visit | undefined }> {
   const { db, makers, now } = bench
   const context = await getHeadContext(db, history.headId, makers[0]!)
   const { material } = context.head
   const scale = { axisymmetric: 1 + 0.02 * random.normal(), others: 1 + 0.01 * random.normal() }
-  const visits = visitsOf({ now, wantedNPerM: history.wantedNPerM, visits: history.visits, yearlyLoss: YEARLY_LOSS[material] }, random)
+  const visits = given ?? visitsOf({ now, wantedNPerM: history.wantedNPerM, visits: history.visits, yearlyLoss: YEARLY_LOSS[material] }, random)
   const instrument = toAnalysedInstrument(context)
   const models = new Map<number, DrumModel>()
   let kept = 0
@@ -49,7 +53,7 @@ export async function playHistory(bench: Bench, history: HeadHistory, random: Se
     kept++
     if (visit.retuned) await turn(bench, readingId, history.wantedNPerM, visit.at, maker)
   }
-  return kept
+  return { kept, last: visits.at(-1) }
 }
 
 async function takeReading({ db, folders, pool }: Bench, { headId, drum }: HeadHistory, visit: Visit, wav: Uint8Array, maker: SignedInUser): Promise<string | undefined> {

@@ -9,7 +9,7 @@ export default defineNitroPlugin((nitro) => {
   log.info({ publicUrl: config.publicUrl }, 'starting')
   // A turn later: plugins run while the built entry is still loading, and until it has, the worker's address is not known.
   setImmediate(() => startAnalysis())
-  startJobs().catch(error => log.error({ err: error }, 'job queue did not start'))
+  startJobs().then(resumeRereading).catch(error => log.error({ err: error }, 'job queue did not start'))
 
   // What the browser is told of its session comes from the row, so a revoked session disappears there too; `ended` lets the page say why.
   sessionHooks.hook('fetch', async (session, event) => {

@@ -1,5 +1,7 @@
 import { z } from 'zod'
+import type { CalibrationView } from './calibration'
 import { idSchema, limitSchema, nameSchema, noteSchema } from './common'
+import { type FilmWeighingInput, filmWeighingSchema } from './weighing'
 
 export const constructionSchema = z.enum(['open', 'frame', 'double-headed', 'kettle', 'fixture'], 'Choose open, frame, double-headed, kettle or fixture.')
 export const headSideSchema = z.enum(['batter', 'resonant'])
@@ -27,6 +29,10 @@ export const headInputSchema = z.object({
   film: filmSchema,
   /** The whole head, coating included; overrides plies x thickness x density. */
   arealDensityKgM2: between(0.02, 5, 'Areal density', 'kg/m²').nullish(),
+  /** What it may be off, 95 %. The least a good scale and a cut disc come to is near 0.05 %. */
+  arealDensityU95KgM2: between(0.000_01, 2, 'Uncertainty of the areal density', 'kg/m²').nullish(),
+  /** A piece of the film on the scale: then it decides the areal density and its uncertainty. */
+  weighing: filmWeighingSchema.nullish(),
   coating: z.string().trim().max(60).nullish(),
 })
 
@@ -35,6 +41,8 @@ const instrumentFields = z.object({
   construction: constructionSchema,
   /** From a 3 in hand drum to a concert bass drum of 60 in. */
   diameterMm: between(75, 1600, 'Vibrating diameter', 'mm'),
+  /** What it may be off, 95 %. A caliper on a bearing edge does not repeat to better than 0.02 mm. */
+  diameterU95Mm: between(0.02, 50, 'Uncertainty of the diameter', 'mm').nullish(),
   depthMm: between(0, 1600, 'Shell depth', 'mm'),
   bowlVolumeL: between(1, 600, 'Bowl volume', 'litres').nullish(),
   /** 24: the largest round that can be read rod by rod. */
@@ -62,11 +70,14 @@ export const instrumentBody = instrumentFields.extend({
 export type InstrumentBody = z.infer<typeof instrumentBody>
 export type InstrumentInput = z.input<typeof instrumentBody>
 
+/** What diameter (by tape) and areal density (by data sheet) are taken to be off where nobody measured, 95 %, as a share. */
+export const USUAL_U95 = { diameter: 0.002, arealDensity: 0.02 }
+
 export const instrumentPatchBody = instrumentFields.omit({ construction: true }).partial()
 export type InstrumentPatchBody = z.infer<typeof instrumentPatchBody>
 
-/** New film on a head: what was learned of its rods is forgotten. */
-export const headPatchBody = headInputSchema.omit({ side: true })
+/** New film on a head, unless it is the same film better known: what was learned of its rods is forgotten. */
+export const headPatchBody = headInputSchema.omit({ side: true }).extend({ sameFilm: z.boolean().default(false) })
 export type HeadPatchBody = z.infer<typeof headPatchBody>
 export const headParams = z.object({ headId: idSchema })
 
@@ -83,7 +94,11 @@ export interface HeadView {
   filmId: string | null
   film: z.infer<typeof filmSchema>
   arealDensityKgM2: number
+  /** 95 %; null: taken for USUAL_U95. */
+  arealDensityU95KgM2: number | null
+  weighing: FilmWeighingInput | null
   coating: string | null
+  calibration: CalibrationView | null
   /** What applied turn sheets taught of this head's rods; null before the first. */
   learned: { kappa: number, passes: number } | null
 }
@@ -94,6 +109,8 @@ export interface InstrumentView {
   name: string
   construction: z.infer<typeof constructionSchema>
   diameterMm: number
+  /** 95 %; null: taken for USUAL_U95. */
+  diameterU95Mm: number | null
   depthMm: number
   bowlVolumeL: number | null
   rodCount: number
@@ -122,6 +139,7 @@ export interface FilmView extends z.infer<typeof filmSchema> {
 export interface InstrumentHistoryView {
   readings: {
     id: string
+    recordingId: string
     takenAt: string
     headId: string
     side: 'batter' | 'resonant'

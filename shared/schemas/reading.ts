@@ -65,6 +65,21 @@ export interface RecordingView {
   refusal: Refusal | null
 }
 
+/** What a later version said of a recording that an earlier one had read. */
+export interface RereadRefusal extends Refusal { version: string }
+
+/** Another reading of the same recording. */
+export interface ReadingVersionView {
+  id: string
+  analysisVersion: string
+  /** When it was read, not when the tap was. */
+  readAt: string
+  tension: { nPerM: number, u95NPerM: number }
+  fundamentalHz: number
+  doubtful: boolean
+  newest: boolean
+}
+
 /** One reading, whole. */
 export interface ReadingView extends AnalysedReading {
   id: string
@@ -75,6 +90,19 @@ export interface ReadingView extends AnalysedReading {
   /** Null where the head has had a new film since. */
   filmStress: { mPa: number, shareOfYield: number } | null
   makerName: string | null
+  /** When it was read, not when the tap was. */
+  readAt: string
+  /** False for a reading that a newer one of the same recording stands before. */
+  newest: boolean
+  /** The other readings of this recording, newest first. */
+  versions: ReadingVersionView[]
+  /** Why reading again would give another figure; null for what is up to date, and for readings that are not the newest. */
+  outdated: 'version' | 'figures' | null
+  rereadRefusal: RereadRefusal | null
+  /** The calibration that it was read with. */
+  calibration: { kind: 'known' | 'reading', at: string, knownNPerM: number, knownU95NPerM: number } | null
+  /** Newest reading of both heads together that this recording is part of. */
+  togetherId: string | null
   sound: SoundFacts
   /** `audible`: the person asking may play it. */
   recording: { id: string, note: string | null, strike: z.infer<typeof strikeSchema>, rod: number | null, firstRod: number, centreDamped: boolean, temperatureC: number, audible: boolean }

@@ -1,10 +1,12 @@
 import AxeBuilder from '@axe-core/playwright'
 import { readdirSync } from 'node:fs'
+import type { ReadingsPage } from '../../shared/schemas/reading'
 import { type DemoPerson, expect, type Page, test } from './fixtures'
 
 // Every page is named here with who opens it; the first test fails when one is missing. A function finds the id of what to show.
 const pages: Record<string, { who: DemoPerson | null, path: string | ((page: Page) => Promise<string>) }> = {
   'index': { who: null, path: '/' },
+  'accuracy': { who: null, path: '/accuracy' },
   'sign-in': { who: null, path: '/sign-in' },
   'sign-up': { who: null, path: '/sign-up' },
   'forgot-password': { who: null, path: '/forgot-password' },
@@ -12,12 +14,15 @@ const pages: Record<string, { who: DemoPerson | null, path: string | ((page: Pag
   'confirm-email': { who: null, path: `/confirm-email?token=${'x'.repeat(43)}` },
   'account': { who: 'player', path: '/account' },
   'people': { who: 'owner', path: '/people' },
-  'histories': { who: 'staff', path: '/histories' },
+  'histories/index': { who: 'staff', path: '/histories' },
+  'histories/rereading': { who: 'owner', path: '/histories/rereading' },
   'bench': { who: 'maker', path: '/bench' },
   'instruments/index': { who: 'maker', path: '/instruments' },
   'instruments/new': { who: 'maker', path: '/instruments/new' },
   'instruments/[id]/index': { who: 'maker', path: async page => `/instruments/${await firstId(page, '/api/instruments')}` },
   'instruments/[id]/edit': { who: 'maker', path: async page => `/instruments/${await firstId(page, '/api/instruments')}/edit` },
+  'instruments/[id]/calibrate': { who: 'maker', path: async page => `/instruments/${await firstId(page, '/api/instruments')}/calibrate` },
+  'both-heads/[id]': { who: 'maker', path: newBothHeads },
   'readings/[id]': { who: 'maker', path: async page => `/readings/${await firstId(page, '/api/readings')}` },
   'turn-sheets/[id]': { who: 'maker', path: newTurnSheet },
   'design': { who: 'player', path: '/design' },
@@ -36,6 +41,18 @@ async function newTurnSheet(page: Page): Promise<string> {
   const answer = await page.request.post('/api/turn-sheets', { data: { readingId: reading?.id, target: { kind: 'tension', nPerM: Math.round(reading!.tension.nPerM * 1.02) } } })
   expect(answer.status(), await answer.text()).toBe(201)
   return `/turn-sheets/${(await answer.json() as { id: string }).id}`
+}
+
+/** A tap on each head of one of the demo's double-headed drums, read together: as close in time as they come. */
+async function newBothHeads(page: Page): Promise<string> {
+  const list = async (side: string) => (await (await page.request.get(`/api/readings?construction=double-headed&side=${side}&limit=200`)).json() as ReadingsPage).items
+  const [batters, resonants] = [await list('batter'), await list('resonant')]
+  const apart = (a: string, b: string) => Math.abs(new Date(a).getTime() - new Date(b).getTime())
+  const [pair] = batters.flatMap(batter => resonants.filter(resonant => resonant.instrumentId === batter.instrumentId).map(resonant => ({ batter, resonant })))
+    .sort((a, b) => apart(a.batter.takenAt, a.resonant.takenAt) - apart(b.batter.takenAt, b.resonant.takenAt))
+  const answer = await page.request.post('/api/both-heads', { data: { batterReadingId: pair?.batter.id, resonantReadingId: pair?.resonant.id } })
+  expect(answer.status(), await answer.text()).toBe(201)
+  return `/both-heads/${(await answer.json() as { id: string }).id}`
 }
 
 test('every page is on the list of this test', () => {

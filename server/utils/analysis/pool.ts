@@ -1,9 +1,16 @@
 import { Piscina } from 'piscina'
-import type { AnalysisOutcome, AnalysisRequest } from './types'
+import type { BothHeadsReading, HeadCalibration } from '../../../shared/types/reading'
+import type { TappedReading } from './matchingBoth'
+import type { KnownTension } from './matchingCalibration'
+import type { AnalysedInstrument, AnalysisOutcome, AnalysisRequest } from './types'
 
 export interface AnalysisPool {
   /** Reads a recording in a thread. The file's bytes move to the thread and are gone here. */
   analyse(request: AnalysisRequest): Promise<AnalysisOutcome>
+  /** Both heads from stored readings of a tap on each, in a thread. */
+  readBothHeads(instrument: AnalysedInstrument, taps: TappedReading[]): Promise<BothHeadsReading>
+  /** What a stored reading at a known tension teaches, in a thread. */
+  calibrate(known: KnownTension): Promise<HeadCalibration>
   /** Ends the threads; unfinished readings reject. */
   close(): Promise<void>
 }
@@ -14,6 +21,9 @@ export interface PoolOptions {
   /** Told of a thread that failed outside a reading; readings reject by themselves. */
   onError?: (error: unknown) => void
 }
+
+/** What the worker exports (server/workers/analysis.ts). */
+type WorkerTask = 'default' | 'readBoth' | 'calibrateHead'
 
 /** An analysis that took longer than it may; the recording is at fault, not the caller. */
 export class AnalysisTimeoutError extends Error {
@@ -46,19 +56,24 @@ export function createAnalysisPool(workerUrl: URL, options: PoolOptions = {}): A
   })
   // Without a listener a thread that cannot start would end the whole process.
   piscina.on('error', error => options.onError?.(error))
+  async function run<T>(name: WorkerTask, input: unknown, transferList: ArrayBuffer[] = []): Promise<T> {
+    const limit = new AbortController()
+    const timer = setTimeout(() => limit.abort(), timeLimitMs)
+    try {
+      return await piscina.run(input, { name, transferList, signal: limit.signal }) as T
+    } catch (error) {
+      throw limit.signal.aborted ? new AnalysisTimeoutError(timeLimitMs) : error
+    } finally {
+      clearTimeout(timer)
+    }
+  }
   return {
-    async analyse(request) {
+    analyse(request) {
       const wav = ownBytes(request.wav)
-      const limit = new AbortController()
-      const timer = setTimeout(() => limit.abort(), timeLimitMs)
-      try {
-        return await piscina.run({ ...request, wav }, { transferList: [wav.buffer], signal: limit.signal }) as AnalysisOutcome
-      } catch (error) {
-        throw limit.signal.aborted ? new AnalysisTimeoutError(timeLimitMs) : error
-      } finally {
-        clearTimeout(timer)
-      }
+      return run<AnalysisOutcome>('default', { ...request, wav }, [wav.buffer])
     },
+    readBothHeads: (instrument, taps) => run<BothHeadsReading>('readBoth', { instrument, taps }),
+    calibrate: known => run<HeadCalibration>('calibrateHead', known),
     close: () => piscina.destroy(),
   }
 }

@@ -14,4 +14,7 @@ export async function closeDb(): Promise<void> {
   await open?.destroy()
 }
 
+/** A row that an index allows only once was there already. Source: PostgreSQL, appendix A, class 23. */
+export const isUniqueViolation = (error: unknown): boolean => error instanceof Error && 'code' in error && error.code === '23505'
+
 export type { DB, Kysely, Transaction }

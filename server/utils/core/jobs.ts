@@ -6,12 +6,14 @@ import { log } from './log'
 import { deliverMail } from '../mail/deliver'
 import { sendRefund } from '../payments/sendRefund'
 import { settleOverdueCheckouts } from '../payments/sweep'
+import { workOnRereading } from '../rereading/work'
 
 /** Queues and what a job of each carries: ids only, never secrets; the worker reads the rest when it runs. */
 export interface Jobs {
   'mail': { kind: MailKind, id: string }
   'refund': { id: string }
   'sweep-checkouts': Record<string, never>
+  'rereading': { id: string }
 }
 export type MailKind = 'confirm-email' | 'reset-password' | 'invitation' | 'order-receipt'
 
@@ -19,7 +21,10 @@ const workers: { [Name in keyof Jobs]: (data: Jobs[Name]) => Promise<void> } = {
   'mail': deliverMail,
   'refund': ({ id }) => sendRefund(id),
   'sweep-checkouts': () => settleOverdueCheckouts(),
+  'rereading': ({ id }) => workOnRereading(id),
 }
+/** `short` keeps one job waiting at most: a chain of jobs that is asked for twice stays one chain. */
+const policies: Partial<Record<keyof Jobs, PgBoss.QueuePolicy>> = { rereading: 'short' }
 const queues = Object.keys(workers) as (keyof Jobs)[]
 
 let boss: PgBoss | undefined
@@ -31,7 +36,7 @@ export function startJobs(): Promise<PgBoss> {
     boss.on('error', error => log.error({ err: error }, 'job queue'))
     await boss.start()
     for (const name of queues) {
-      await boss.createQueue(name)
+      await boss.createQueue(name, { name, policy: policies[name] ?? 'standard' })
       await boss.work<Jobs[typeof name]>(name, { pollingIntervalSeconds: 0.5, batchSize: 1 }, async ([job]) => {
         if (job) await workers[name](job.data as never)
       })

@@ -11,7 +11,8 @@ export interface HistoryFilters { conditions: Condition[], needsInstruments: boo
 export function readFilters(query: ReadingsQuery, user: Pick<SignedInUser, 'id' | 'role'>): HistoryFilters {
   const instrument: Condition[] = []
   const head: Condition[] = []
-  const reading: Condition[] = []
+  // Of a recording that was read again the newest reading stands for it.
+  const reading: Condition[] = [sql`r.superseded_at is null`]
 
   if (user.role === 'customer') instrument.push(sql`i.customer_id = ${user.id}::uuid`)
   if (query.customerId) instrument.push(sql`i.customer_id = ${query.customerId}::uuid`)

@@ -8,6 +8,7 @@ import type { DB, Kysely } from '../core/db'
 import { notFound } from '../core/errors'
 import { containsPattern } from '../core/search'
 import { visibleTo } from './access'
+import { type CalibrationRecord, listCalibrations } from './calibrations'
 import { type InstrumentRecord, toInstrumentView } from './views'
 
 type Viewer = Pick<SignedInUser, 'id' | 'role'>
@@ -17,21 +18,22 @@ function instrumentRows(db: Kysely<DB>, user: Viewer) {
     .selectAll('instruments').select('customer.name as customer_name')
     .select(sql<InstrumentRecord['last']>`(
       select json_build_object('id', r.id, 'taken_at', r.taken_at, 'side', h.side, 'tension', r.tension_n_per_m, 'fundamental', r.fundamental_hz)
-      from readings r join heads h on h.id = r.head_id where r.instrument_id = instruments.id order by r.taken_at desc, r.id desc limit 1)`.as('last'))
+      from readings r join heads h on h.id = r.head_id where r.instrument_id = instruments.id and r.superseded_at is null order by r.taken_at desc, r.id desc limit 1)`.as('last'))
     .where(visibleTo(user))
 }
 
-/** Batter heads first. */
-async function headsOf(db: Kysely<DB>, instrumentIds: string[]): Promise<HeadRow[]> {
-  if (!instrumentIds.length) return []
-  return db.selectFrom('heads').selectAll().where('instrument_id', 'in', instrumentIds).orderBy('side').execute()
+/** Batter heads first, and the calibrations that hold of them. */
+async function headsOf(db: Kysely<DB>, instrumentIds: string[]): Promise<[HeadRow[], CalibrationRecord[]]> {
+  if (!instrumentIds.length) return [[], []]
+  const heads = await db.selectFrom('heads').selectAll().where('instrument_id', 'in', instrumentIds).orderBy('side').execute()
+  return [heads, await listCalibrations(db, heads.map(head => head.id))]
 }
 
 /** @throws DomainError not-found, also for what belongs to someone else */
 export async function getInstrument(db: Kysely<DB>, id: string, user: Viewer): Promise<InstrumentView> {
   const row = await instrumentRows(db, user).where('instruments.id', '=', id).executeTakeFirst()
   if (!row) throw notFound('This instrument')
-  return toInstrumentView(row, await headsOf(db, [id]))
+  return toInstrumentView(row, ...await headsOf(db, [id]))
 }
 
 /** Where a page ended. */
@@ -55,7 +57,7 @@ export async function listInstruments(db: Kysely<DB>, query: InstrumentQuery, us
   const heads = await headsOf(db, shown.map(row => row.id))
   const last = shown.at(-1)
   return {
-    items: shown.map(row => toInstrumentView(row, heads)),
+    items: shown.map(row => toInstrumentView(row, ...heads)),
     total: counted.total,
     next: last && rows.length > query.limit ? encodeCursor({ createdKey: last.created_key, id: last.id }) : null,
   }

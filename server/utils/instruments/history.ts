@@ -18,12 +18,14 @@ export async function getInstrumentHistory(db: Kysely<DB>, id: string, user: Pic
 
 async function readingPoints(db: Kysely<DB>, instrumentId: string): Promise<InstrumentHistoryView['readings']> {
   const rows = await db.selectFrom('readings').innerJoin('heads', 'heads.id', 'readings.head_id').leftJoin('users', 'users.id', 'readings.taken_by')
-    .select(['readings.id', 'readings.taken_at', 'readings.head_id', 'heads.side', 'readings.strike', 'readings.tension_n_per_m', 'readings.u95_n_per_m',
+    .select(['readings.id', 'readings.recording_id', 'readings.taken_at', 'readings.head_id', 'heads.side', 'readings.strike', 'readings.tension_n_per_m', 'readings.u95_n_per_m',
       'readings.fundamental_hz', 'readings.evenness_percent', 'readings.temperature_c', 'readings.doubtful', 'users.name as maker_name'])
-    .where('readings.instrument_id', '=', instrumentId)
+    // Of a recording that was read again the newest reading stands for it.
+    .where('readings.instrument_id', '=', instrumentId).where('readings.superseded_at', 'is', null)
     .orderBy('readings.taken_at', 'desc').orderBy('readings.id', 'desc').limit(MAX_READINGS).execute()
   return rows.map(row => ({
     id: row.id,
+    recordingId: row.recording_id,
     takenAt: row.taken_at.toISOString(),
     headId: row.head_id,
     side: row.side,

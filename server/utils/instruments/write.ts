@@ -1,17 +1,20 @@
-import type { HeadPatchBody, InstrumentBody, InstrumentPatchBody, InstrumentView } from '../../../shared/schemas/instrument'
+import type { InstrumentBody, InstrumentPatchBody, InstrumentView } from '../../../shared/schemas/instrument'
 import type { SignedInUser } from '../../../shared/types/roles'
 import type { InstrumentRow } from '../../../db/instruments.table'
 import type { DB, Kysely, Transaction } from '../core/db'
 import { DomainError, notFound } from '../core/errors'
 import { recordAudit } from '../people/audit'
 import { visibleTo } from './access'
+import { endCalibrations } from './calibrations'
+import { filmColumns, nothingLearned, requireCatalogueFilm } from './films'
 import { getInstrument } from './find'
 
 type Actor = Pick<SignedInUser, 'id' | 'role'>
-type HeadInput = InstrumentBody['heads'][number]
 
 /** What the rods do to the film changes with any of these. */
 const ROD_FIELDS = ['diameterMm', 'rodCount', 'threadPitchMm'] as const
+/** Readings rest on these; a calibration made with other ones holds no longer. */
+const READ_FIELDS = ['diameterMm', 'diameterU95Mm', 'depthMm', 'bowlVolumeL'] as const
 
 /** A customer's instrument is always the customer's own. @param at when it was registered (the demo places it in the past) */
 export async function createInstrument(db: Kysely<DB>, body: InstrumentBody, by: Actor, at = new Date()): Promise<InstrumentView> {
@@ -19,13 +22,13 @@ export async function createInstrument(db: Kysely<DB>, body: InstrumentBody, by:
     const customerId = by.role === 'customer' ? by.id : body.customerId ?? null
     await requireCustomer(trx, customerId)
     const row = await trx.insertInto('instruments').values({
-      name: body.name, construction: body.construction, diameter_mm: body.diameterMm, depth_mm: body.depthMm, bowl_volume_l: body.bowlVolumeL ?? null,
+      name: body.name, construction: body.construction, diameter_mm: body.diameterMm, diameter_u95_mm: body.diameterU95Mm ?? null, depth_mm: body.depthMm, bowl_volume_l: body.bowlVolumeL ?? null,
       rod_count: body.rodCount, thread_pitch_mm: body.threadPitchMm, hoop: body.hoop || null, note: body.note || null,
       customer_id: customerId, created_by: by.id, created_at: at, updated_at: at,
     }).returning('id').executeTakeFirstOrThrow()
     for (const [index, head] of body.heads.entries()) {
-      await requireFilm(trx, head.filmId, `heads.${index}.filmId`)
-      await trx.insertInto('heads').values({ instrument_id: row.id, side: head.side, ...filmColumns(head), kappa: null, kappa_variance: null, film_since: at, created_at: at }).execute()
+      await requireCatalogueFilm(trx, head.filmId, `heads.${index}.filmId`)
+      await trx.insertInto('heads').values({ instrument_id: row.id, side: head.side, ...filmColumns(head), kappa: null, kappa_variance: null, film_since: at, figures_since: at, created_at: at }).execute()
     }
     await recordAudit(trx, { actor: by.id, action: 'instrument-created', subjectType: 'instrument', subjectId: row.id, detail: { name: body.name } })
     return row.id
@@ -33,25 +36,10 @@ export async function createInstrument(db: Kysely<DB>, body: InstrumentBody, by:
   return getInstrument(db, id, by)
 }
 
-function filmColumns(head: Omit<HeadInput, 'side'>) {
-  const { film } = head
-  return {
-    film_id: head.filmId || null, material: film.material, plies: film.plies, thickness_um: film.thicknessUm, density_kg_m3: film.densityKgM3,
-    modulus_gpa: film.modulusGPa, poisson: film.poisson, yield_mpa: film.yieldMPa, coating: head.coating || null,
-    areal_density_kg_m2: head.arealDensityKgM2 ?? film.plies * film.thicknessUm * 1e-6 * film.densityKgM3,
-  }
-}
-
 async function requireCustomer(trx: Transaction<DB>, id: string | null): Promise<void> {
   if (id === null) return
   const customer = await trx.selectFrom('users').select('id').where('id', '=', id).where('role', '=', 'customer').executeTakeFirst()
   if (!customer) throw new DomainError('bad-input', 'Choose the owner from the customers.', [{ path: 'customerId', message: 'This is not a customer of the workshop.' }])
-}
-
-async function requireFilm(trx: Transaction<DB>, id: string | null | undefined, path: string): Promise<void> {
-  if (!id) return
-  const film = await trx.selectFrom('films').select('id').where('id', '=', id).executeTakeFirst()
-  if (!film) throw new DomainError('bad-input', 'Choose the film from the catalogue, or leave it out and give its figures.', [{ path, message: 'The catalogue has no such film.' }])
 }
 
 async function lockInstrument(trx: Transaction<DB>, id: string, by: Actor): Promise<InstrumentRow> {
@@ -68,19 +56,24 @@ export async function patchInstrument(db: Kysely<DB>, id: string, patch: Instrum
     if (customerId !== now.customer_id) await requireCustomer(trx, customerId)
     requireWhole(now, patch)
     await trx.updateTable('instruments').set({
-      name: patch.name, diameter_mm: patch.diameterMm, depth_mm: patch.depthMm, bowl_volume_l: patch.bowlVolumeL, rod_count: patch.rodCount,
+      name: patch.name, diameter_mm: patch.diameterMm, diameter_u95_mm: patch.diameterU95Mm, depth_mm: patch.depthMm, bowl_volume_l: patch.bowlVolumeL, rod_count: patch.rodCount,
       thread_pitch_mm: patch.threadPitchMm, hoop: patch.hoop, note: patch.note, customer_id: customerId, updated_at: new Date(),
     }).where('id', '=', id).execute()
-    if (ROD_FIELDS.some(field => patch[field] !== undefined && patch[field] !== rodField(now, field))) {
-      await trx.updateTable('heads').set({ ...forgotten(), film_since: new Date() }).where('instrument_id', '=', id).execute()
+    const changed = (field: keyof typeof columns) => patch[field] !== undefined && patch[field] !== now[columns[field]]
+    const at = new Date()
+    if (ROD_FIELDS.some(changed)) await trx.updateTable('heads').set({ ...nothingLearned(), figures_since: at }).where('instrument_id', '=', id).execute()
+    if (READ_FIELDS.some(changed)) {
+      const heads = await trx.updateTable('heads').set({ figures_since: at }).where('instrument_id', '=', id).returning('id').execute()
+      await endCalibrations(trx, heads.map(head => head.id), { by: by.id, because: 'the instrument\'s size was changed', at })
     }
     await recordAudit(trx, { actor: by.id, action: 'instrument-changed', subjectType: 'instrument', subjectId: id, detail: { fields: Object.keys(patch) } })
   })
   return getInstrument(db, id, by)
 }
 
-const rodField = (row: InstrumentRow, field: typeof ROD_FIELDS[number]) => ({ diameterMm: row.diameter_mm, rodCount: row.rod_count, threadPitchMm: row.thread_pitch_mm })[field]
-const forgotten = () => ({ kappa: null, kappa_variance: null, kappa_passes: 0 })
+const columns = {
+  diameterMm: 'diameter_mm', diameterU95Mm: 'diameter_u95_mm', depthMm: 'depth_mm', bowlVolumeL: 'bowl_volume_l', rodCount: 'rod_count', threadPitchMm: 'thread_pitch_mm',
+} as const
 
 /** What instrumentBody asks of a whole instrument must hold after a change of a part, too. */
 function requireWhole(now: InstrumentRow, patch: InstrumentPatchBody): void {
@@ -98,18 +91,4 @@ export async function duplicateInstrument(db: Kysely<DB>, id: string, by: Actor)
   const source = await getInstrument(db, id, by)
   const name = `${source.name.slice(0, 113)} (copy)`
   return createInstrument(db, { ...source, name, heads: source.heads }, by)
-}
-
-/** A new film: readings before it teach nothing of how its rods pull. */
-export async function changeHeadFilm(db: Kysely<DB>, headId: string, body: HeadPatchBody, by: Actor): Promise<InstrumentView> {
-  const instrumentId = await db.transaction().execute(async (trx) => {
-    const head = await trx.selectFrom('heads').innerJoin('instruments', 'instruments.id', 'heads.instrument_id')
-      .select(['heads.id', 'heads.instrument_id']).where('heads.id', '=', headId).where(visibleTo(by)).forUpdate('heads').executeTakeFirst()
-    if (!head) throw notFound('This head')
-    await requireFilm(trx, body.filmId, 'filmId')
-    await trx.updateTable('heads').set({ ...filmColumns(body), ...forgotten(), film_since: new Date() }).where('id', '=', headId).execute()
-    await recordAudit(trx, { actor: by.id, action: 'head-film-changed', subjectType: 'head', subjectId: headId, detail: { filmId: body.filmId ?? null, material: body.film.material } })
-    return head.instrument_id
-  })
-  return getInstrument(db, instrumentId, by)
 }

@@ -1,12 +1,15 @@
 import type { HeadRow, InstrumentRow } from '../../../db/instruments.table'
+import type { CalibrationRow } from '../../../db/rereading.table'
+import type { HeadCalibration } from '../../../shared/types/reading'
 import type { SignedInUser } from '../../../shared/types/roles'
 import { visibleTo } from '../instruments/access'
+import { findCalibration } from '../instruments/calibrations'
 import type { AnalysedHead, AnalysedInstrument } from '../analysis/types'
 import type { DB, Kysely } from '../core/db'
 import { notFound } from '../core/errors'
 
-/** A head with the instrument that it belongs to and the instrument's other head, if any. */
-export interface HeadContext { instrument: InstrumentRow, head: HeadRow, other: HeadRow | null }
+/** A head with the instrument that it belongs to, the instrument's other head, and the calibration that holds of it, if any. */
+export interface HeadContext { instrument: InstrumentRow, head: HeadRow, other: HeadRow | null, calibration: CalibrationRow | null }
 
 /** @throws DomainError not-found, also for what belongs to someone else */
 export async function getHeadContext(db: Kysely<DB>, headId: string, user: Pick<SignedInUser, 'id' | 'role'>): Promise<HeadContext> {
@@ -16,11 +19,16 @@ export async function getHeadContext(db: Kysely<DB>, headId: string, user: Pick<
   const heads = await db.selectFrom('heads').selectAll().where('instrument_id', '=', instrument.id).execute()
   const head = heads.find(row => row.id === headId)
   if (!head) throw notFound('This head')
-  return { instrument, head, other: heads.find(row => row.id !== headId) ?? null }
+  return { instrument, head, other: heads.find(row => row.id !== headId) ?? null, calibration: await findCalibration(db, headId) ?? null }
 }
 
-/** Rows in trade units become the analysis's SI. */
-export function toAnalysedInstrument({ instrument, head, other }: HeadContext): AnalysedInstrument {
+/** What is stated as 95 % of a normal distribution, as a standard uncertainty. Source: JCGM 100:2008, table G.1. */
+const COVERAGE_95 = 1.96
+
+/** Rows in trade units become the analysis's SI; the struck head stands first. */
+export function toAnalysedInstrument({ instrument, head, other, calibration }: HeadContext): AnalysedInstrument {
+  const { diameter_u95_mm: diameterU95Mm } = instrument
+  const { areal_density_u95_kg_m2: densityU95, areal_density_kg_m2: density } = head
   return {
     construction: instrument.construction,
     radiusM: instrument.diameter_mm / 2000,
@@ -28,6 +36,13 @@ export function toAnalysedInstrument({ instrument, head, other }: HeadContext): 
     ...(instrument.bowl_volume_l !== null && { bowlVolumeM3: instrument.bowl_volume_l / 1000 }),
     rodCount: instrument.rod_count,
     heads: [head, ...(other ? [other] : [])].map(toAnalysedHead),
+    ...((diameterU95Mm !== null || densityU95 !== null) && {
+      uncertainty: {
+        ...(diameterU95Mm !== null && { diameterMm: diameterU95Mm / COVERAGE_95 }),
+        ...(densityU95 !== null && { arealDensityRelative: densityU95 / density / COVERAGE_95 }),
+      },
+    }),
+    ...(calibration && { calibration: calibration.found as HeadCalibration }),
   }
 }
 

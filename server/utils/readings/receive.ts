@@ -5,13 +5,14 @@ import type { SignedInUser } from '../../../shared/types/roles'
 import { analyseInWorker } from '../analysis/inWorker'
 import { AnalysisTimeoutError } from '../analysis/pool'
 import { RefusalError } from '../analysis/refusal'
-import type { AnalysisOutcome, AnalysisRequest } from '../analysis/types'
+import type { AnalysisOutcome } from '../analysis/types'
 import type { DB, Kysely } from '../core/db'
 import { DomainError } from '../core/errors'
 import { parseInput } from '../core/parse'
 import { ensureTempPath, type RecordingFolders } from './files'
 import { getReading } from './find'
-import { getHeadContext, type HeadContext, toAnalysedInstrument } from './headContext'
+import { getHeadContext, type HeadContext } from './headContext'
+import { toAnalysisRequest, tookTooLong } from './request'
 import { isCentreDamped, storeAnalysedRecording } from './store'
 import { type ReceivedUpload, receiveUpload } from './upload'
 import { toRecordingView } from './views'
@@ -41,7 +42,7 @@ async function analyseAndStore(db: Kysely<DB>, folders: RecordingFolders, contex
   const outcome = await analyse(context, fields, upload.tempPath)
   const result = outcome.kind === 'read' ? { kind: outcome.kind, reading: outcome.reading } : { kind: outcome.kind, refusal: outcome.refusal }
   if (result.kind === 'refused' && (!outcome.sound || result.refusal.code === 'not-wav')) throw new RefusalError(result.refusal.code, result.refusal.message)
-  const stored = await storeAnalysedRecording(db, folders, { headId: context.head.id, fields, file: upload, sound: outcome.sound!, result, by: user.id, takenAt: new Date() })
+  const stored = await storeAnalysedRecording(db, folders, { headId: context.head.id, fields, file: upload, sound: outcome.sound!, result, by: user.id, takenAt: new Date(), calibrationId: context.calibration?.id })
   return {
     recording: toRecordingView(stored.recording),
     reading: stored.reading ? await getReading(db, stored.reading.id, user) : null,
@@ -49,19 +50,9 @@ async function analyseAndStore(db: Kysely<DB>, folders: RecordingFolders, contex
 }
 
 async function analyse(context: HeadContext, fields: RecordingFields, path: string): Promise<AnalysisOutcome> {
-  const request: AnalysisRequest = {
-    wav: await readFile(path),
-    instrument: toAnalysedInstrument(context),
-    side: context.head.side,
-    strike: fields.strike,
-    ...(fields.rod !== undefined && { rod: fields.rod }),
-    firstRod: fields.firstRod,
-    centreDamped: isCentreDamped(fields),
-    temperatureC: fields.temperatureC,
-  }
+  const request = toAnalysisRequest(context, await readFile(path), { ...fields, centreDamped: isCentreDamped(fields) })
   return analyseInWorker(request).catch((error: unknown) => {
-    if (!(error instanceof AnalysisTimeoutError)) throw error
-    throw new DomainError('unreadable-recording', 'Reading this recording took too long. Cut it down to one tap with a second or two of ring, and send it again.')
+    throw error instanceof AnalysisTimeoutError ? tookTooLong() : error
   })
 }
 

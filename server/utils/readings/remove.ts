@@ -18,6 +18,9 @@ export async function deleteRecording(db: Kysely<DB>, folders: RecordingFolders,
       eb('turn_sheets.reading_id', '=', eb.ref('readings.id')), eb('turn_sheets.next_reading_id', '=', eb.ref('readings.id')),
     ]))).select('turn_sheets.id').where('readings.recording_id', '=', id).where('turn_sheets.applied_at', 'is not', null).executeTakeFirst()
     if (used) throw new DomainError('conflict', 'Rods were turned by this reading, so it stays in the tuning history.')
+    const calibrated = await trx.selectFrom('calibrations').innerJoin('readings', 'readings.id', 'calibrations.source_reading_id').select('calibrations.id')
+      .where('readings.recording_id', '=', id).where('calibrations.removed_at', 'is', null).executeTakeFirst()
+    if (calibrated) throw new DomainError('conflict', 'The head is calibrated by this recording. Take the calibration off first.')
     await trx.deleteFrom('recordings').where('id', '=', id).execute()
     await recordAudit(trx, { actor: by.id, action: 'recording-deleted', subjectType: 'recording', subjectId: id, detail: { headId: recording.head_id } })
     return recording.file_path

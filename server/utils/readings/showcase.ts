@@ -1,7 +1,8 @@
 import type { ReadingView } from '../../../shared/schemas/reading'
 import type { DB, Kysely } from '../core/db'
 import { DomainError } from '../core/errors'
-import { getReading } from './find'
+import { getReading, getReadingRow } from './find'
+import { findNewestReading } from './newest'
 
 /* Security model: exactly one reading, named in `settings`, is shown to everybody; nothing else is reachable from here. */
 
@@ -16,7 +17,9 @@ export async function findShowcase(db: Kysely<DB>): Promise<ReadingView | null> 
   const setting = await db.selectFrom('settings').select('value').where('key', '=', SHOWCASE_READING).executeTakeFirst()
   if (typeof setting?.value !== 'string') return null
   try {
-    return await getReading(db, setting.value, VIEWER)
+    const named = await getReadingRow(db, setting.value, VIEWER)
+    // Read again since: the newest reading of that recording stands in the window.
+    return await getReading(db, (await findNewestReading(db, named.recording_id))?.id ?? named.id, VIEWER)
   } catch (error) {
     if (error instanceof DomainError && error.code === 'not-found') return null
     throw error

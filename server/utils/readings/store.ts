@@ -3,6 +3,7 @@ import { writeFile } from 'node:fs/promises'
 import type { RecordingFields } from '../../../shared/schemas/reading'
 import type { ReadingRow, RecordingRow } from '../../../db/readings.table'
 import type { AnalysedReading, Refusal, SoundFacts } from '../analysis/types'
+import { ANALYSIS_VERSION } from '../analysis/version'
 import type { DB, Kysely, Transaction } from '../core/db'
 import { notFound } from '../core/errors'
 import { recordAudit } from '../people/audit'
@@ -21,6 +22,8 @@ export interface AnalysedRecording {
   /** User id of whoever took it. */
   by: string | null
   takenAt: Date
+  /** The calibration that it was read with. */
+  calibrationId?: string | null
 }
 
 /**
@@ -37,7 +40,7 @@ export async function storeAnalysedRecording(db: Kysely<DB>, folders: RecordingF
       const head = await trx.selectFrom('heads').select(['id', 'instrument_id']).where('id', '=', input.headId).forUpdate().executeTakeFirst()
       if (!head) throw notFound('This head')
       const recording = await insertRecording(trx, input, { id, filePath, instrumentId: head.instrument_id })
-      const reading = input.result.kind === 'read' ? await insertReading(trx, input, input.result.reading, recording) : null
+      const reading = input.result.kind === 'read' ? await insertReading(trx, recording, input.result.reading, { calibrationId: input.calibrationId ?? null }) : null
       if (reading) await closeTurnSheets(trx, reading)
       await recordAudit(trx, { actor: input.by, action: reading ? 'reading-taken' : 'recording-refused', subjectType: 'recording', subjectId: id, detail: { headId: head.id } })
       await keepFile(folders, input.file.tempPath, filePath)
@@ -72,18 +75,20 @@ function insertRecording(trx: Transaction<DB>, { fields, file, sound, result, by
     refusal_message: result.kind === 'refused' ? result.refusal.message : null,
     sound: JSON.stringify(sound),
     recorded_at: takenAt,
+    analysis_version: ANALYSIS_VERSION,
   }).returningAll().executeTakeFirstOrThrow()
 }
 
-function insertReading(trx: Transaction<DB>, { by, takenAt, fields }: AnalysedRecording, reading: AnalysedReading, recording: RecordingRow): Promise<ReadingRow> {
+/** A reading of a recording, taken when and by whom the recording was. @param at  when the figures it was read with were taken */
+export function insertReading(trx: Transaction<DB>, recording: RecordingRow, reading: AnalysedReading, { calibrationId, at }: { calibrationId: string | null, at?: Date }): Promise<ReadingRow> {
   return trx.insertInto('readings').values({
     recording_id: recording.id,
     head_id: recording.head_id,
     instrument_id: recording.instrument_id,
-    taken_at: takenAt,
-    taken_by: by,
-    strike: fields.strike,
-    temperature_c: fields.temperatureC,
+    taken_at: recording.recorded_at,
+    taken_by: recording.uploaded_by,
+    strike: recording.strike,
+    temperature_c: recording.temperature_c,
     tension_n_per_m: reading.tension.nPerM,
     u95_n_per_m: reading.tension.u95NPerM,
     repeatability_u95_n_per_m: reading.tension.repeatabilityU95NPerM,
@@ -93,6 +98,8 @@ function insertReading(trx: Transaction<DB>, { by, takenAt, fields }: AnalysedRe
     doubtful: reading.doubtful,
     detail: JSON.stringify(reading),
     analysis_version: reading.analysisVersion,
+    calibration_id: calibrationId,
+    ...(at && { created_at: at }),
   }).returningAll().executeTakeFirstOrThrow()
 }
 

@@ -26,7 +26,8 @@ async function learn(trx: Transaction<DB>, sheets: TurnSheetRow[], after: Readin
   if (beforeIds.size !== 1) return
   const head = await trx.selectFrom('heads').selectAll().where('id', '=', after.head_id).executeTakeFirstOrThrow()
   const before = await trx.selectFrom('readings').selectAll().where('id', '=', sheets[0]!.reading_id).executeTakeFirstOrThrow()
-  if (before.doubtful || before.taken_at < head.film_since) return
+  // Read with other figures, or on another film, it cannot be compared.
+  if (before.doubtful || before.taken_at < head.film_since || before.created_at < head.figures_since) return
   const instrument = await trx.selectFrom('instruments').selectAll().where('id', '=', head.instrument_id).executeTakeFirstOrThrow()
   const turned = sheets.flatMap(sheet => sheet.applied as RodTurns[]).reduce((sum, rod) => sum + rod.turns, 0)
   const learned = learnKappa(kappaOf(head), {

@@ -1,6 +1,7 @@
 import type { AppliedBody, RodTurns, TurnSheetBody, TurnSheetView, TurnTarget } from '../../../shared/schemas/turnSheet'
 import type { SignedInUser } from '../../../shared/types/roles'
-import type { TurnSheetRow } from '../../../db/readings.table'
+import type { HeadRow } from '../../../db/instruments.table'
+import type { ReadingRow, TurnSheetRow } from '../../../db/readings.table'
 import { visibleTo } from '../instruments/access'
 import type { DB, Kysely } from '../core/db'
 import { DomainError, notFound } from '../core/errors'
@@ -20,7 +21,7 @@ type Actor = Pick<SignedInUser, 'id' | 'role'>
 export async function createTurnSheet(db: Kysely<DB>, { readingId, target }: TurnSheetBody, by: Actor, at = new Date()): Promise<TurnSheetView> {
   const reading = await getReadingRow(db, readingId, by)
   const context = await getHeadContext(db, reading.head_id, by)
-  if (reading.taken_at < context.head.film_since) throw new DomainError('conflict', 'The head has a new film since this reading, or the instrument has changed. Tap it again first.')
+  refuseStale(reading, context.head)
   const situation = situationOf(context, reading, await otherTension(db, context.other?.id, reading.taken_at))
   const advice = adviseTurns(situation, await goalOf(db, target, situation, reading.head_id, by))
   const row = await db.transaction().execute(async (trx) => {
@@ -32,6 +33,12 @@ export async function createTurnSheet(db: Kysely<DB>, { readingId, target }: Tur
     return sheet
   })
   return toTurnSheetView(row)
+}
+
+function refuseStale(reading: ReadingRow, head: HeadRow): void {
+  if (reading.superseded_at) throw new DomainError('conflict', 'This recording has been read again since. Start from its newest reading.')
+  if (reading.taken_at < head.film_since) throw new DomainError('conflict', 'The head has a new film since this reading. Tap it again first.')
+  if (reading.created_at < head.figures_since) throw new DomainError('conflict', 'The figures of the head or the instrument have changed since this reading. Read it again, or tap it again, first.')
 }
 
 async function goalOf(db: Kysely<DB>, target: TurnTarget, { pitch }: TurnSituation, headId: string, by: Actor): Promise<TurnGoal> {
@@ -47,7 +54,7 @@ async function goalOf(db: Kysely<DB>, target: TurnTarget, { pitch }: TurnSituati
 async function otherTension(db: Kysely<DB>, otherHeadId: string | undefined, until: Date): Promise<number | undefined> {
   if (!otherHeadId) return undefined
   const row = await db.selectFrom('readings').innerJoin('heads', 'heads.id', 'readings.head_id').select('readings.tension_n_per_m')
-    .where('readings.head_id', '=', otherHeadId).where('readings.doubtful', '=', false).where('readings.taken_at', '<=', until)
+    .where('readings.head_id', '=', otherHeadId).where('readings.superseded_at', 'is', null).where('readings.doubtful', '=', false).where('readings.taken_at', '<=', until)
     .whereRef('readings.taken_at', '>=', 'heads.film_since').orderBy('readings.taken_at', 'desc').limit(1).executeTakeFirst()
   return row?.tension_n_per_m
 }

@@ -1,0 +1,4 @@
+export default defineRoute({
+  access: ['owner', 'maker', 'staff'],
+  handler: () => getRereading(useDb()),
+})
