@@ -2,7 +2,7 @@ import { addAirTables, type AirTable } from './airTable'
 import { MAX_NODAL_DIAMETERS, shapeBasis, type ShapeBasis } from './basis'
 import { freeDiscTables } from './airFreeDisc'
 import { halfSpaceTables } from './airHalfSpace'
-import { tubeAir, type AirResonance } from './airTube'
+import { tubeAir, type AirResonance, type TubeAir } from './airTube'
 import type { DrumGeometry } from './types'
 
 /** All the air that one m feels on a drum, in units of rho0 R. */
@@ -24,6 +24,20 @@ function closedDepth(geometry: DrumGeometry): number {
   const volume = geometry.bowlVolumeM3
   if (volume === undefined || !(volume > 0)) throw new RangeError('a kettle needs its bowl volume')
   return volume / (Math.PI * geometry.radiusM ** 2)
+}
+
+const MOST_KEPT = 104
+const kept = new Map<string, TubeAir>()
+
+/** The air of a tube, kept: a drum is read many times over, with two heads and with each alone. */
+function keptTubeAir(m: number, lambda: number, closed: boolean): TubeAir {
+  const key = `${m},${lambda.toPrecision(9)},${closed}`
+  const known = kept.get(key)
+  if (known) return known
+  const made = tubeAir(m, lambda, closed)
+  if (kept.size >= MOST_KEPT) kept.delete(kept.keys().next().value!)
+  kept.set(key, made)
+  return made
 }
 
 /**
@@ -49,7 +63,7 @@ export function constructionAir(geometry: DrumGeometry): GroupAir[] {
     }
     const closed = geometry.construction !== 'open'
     const lambda = closedDepth(geometry) / geometry.radiusM
-    const inside = tubeAir(m, lambda, closed)
+    const inside = keptTubeAir(m, lambda, closed)
     groups.push({
       basis,
       own: addAirTables(outside, inside.own),

@@ -97,14 +97,14 @@ export function groupModes(air: GroupAir, state: GroupState, maxHz: number, roug
     if (known || Math.abs(quadratic(size, mass, start.x, pair.x)) < 0.7) pair = followByOverlap(matrices, start)
     pairs.push(pair)
   }
-  return label(matrices, pairs, rough ? [] : starts).filter(mode => mode.frequencyHz <= maxHz)
+  return label(matrices, pairs, rough ? [] : starts, rough).filter(mode => mode.frequencyHz <= maxHz)
 }
 
 /** A mode is not named after a shape that holds less than this of what its strongest shape holds. */
 const LEAST_CLAIM = 0.1
 
 /** Gives every shape of every head the mode that moves it most; the air's own modes stay unnamed and are left out. */
-function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[]): PredictedMode[] {
+function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[], rough: boolean): PredictedMode[] {
   const { shapes } = matrices
   const claims: Array<{ pair: EigenPair, shape: number, share: number }> = []
   for (const pair of pairs) {
@@ -124,7 +124,7 @@ function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[])
     if (usedPairs.has(claim.pair) || usedShapes.has(claim.shape)) continue
     usedPairs.add(claim.pair)
     usedShapes.add(claim.shape)
-    modes.push(describeMode(matrices, claim.pair, claim.shape, starts))
+    modes.push(describeMode(matrices, claim.pair, claim.shape, starts, rough))
   }
   return modes
 }

@@ -93,6 +93,13 @@ function overlap(matrices: GroupMatrices, x: Float64Array, y: Float64Array): num
   return xy / Math.sqrt(xx * yy)
 }
 
+function slopeOfLoss(matrices: GroupMatrices, { omegaSquared, x }: EigenPair): number {
+  const work = matrices.workA
+  work.fill(0)
+  matrices.fillAir(Math.sqrt(omegaSquared), work, 'loss', true, matrices.state.airScale)
+  return quadratic(matrices.size, work, x, x)
+}
+
 /**
  * All that is known of one mode: frequency with and without radiation, decay, added mass, shape, sensitivities.
  *
@@ -100,8 +107,9 @@ function overlap(matrices: GroupMatrices, x: Float64Array, y: Float64Array): num
  * @param pair    lossless angular frequency squared and shape, normalised to x^T M x = 1
  * @param shape   number of the shape that names the mode, heads one after the other
  * @param others  first guesses of all modes of the same m
+ * @param rough   leave out how the loss changes with frequency: a tenth of the decay rate
  */
-export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: number, others: EigenPair[]): PredictedMode {
+export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: number, others: EigenPair[], rough = false): PredictedMode {
   const { air, state, size, shapes } = matrices
   const count = air.basis.count
   const { x, omegaSquared } = pair
@@ -120,13 +128,8 @@ export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: nu
   }
   const loss = quadratic(size, work, x, x)
   const coupled = coupledLoss(matrices, pair, others, work)
-  work.fill(0)
-  matrices.fillAir(omega, work, 'loss', true, state.airScale)
-  const lossSlope = quadratic(size, work, x, x)
-  work.fill(0)
-  matrices.fillAir(omega, work, 'mass', false, state.airScale)
+  const lossSlope = rough ? 0 : slopeOfLoss(matrices, pair)
   let byAirStiffness = 0
-  const byAirMass = quadratic(size, work, x, x)
   for (let a = 0; a < air.resonances.length; a++) {
     let moved = 0
     for (let i = 0; i < shapes; i++) moved += matrices.coupling[a * shapes + i]! * x[i]!
@@ -145,6 +148,8 @@ export function describeMode(matrices: GroupMatrices, pair: EigenPair, shape: nu
     headStiffness += square * matrices.headStiffness[i]!
     amplitudeSquared += square
   }
+  let byAirMass = inertia - byDensity[0]! - byDensity[1]!
+  for (let i = shapes; i < size; i++) byAirMass -= x[i]! ** 2
   // From x^T K x = omega^2 x^T M(omega) x: d ln omega = (dk - omega^2 dm) / (omega^2 (2 m + dm / d ln omega)).
   const denominator = omegaSquared * (2 * inertia + inertiaSlope)
   const scale = 1 / Math.sqrt(amplitudeSquared)

@@ -1,6 +1,6 @@
 import type { MatchingContext } from './matchingContext'
 import type { ScoredMode, ScoreInput } from './matchingInput'
-import { assignLines, explainedShare, scoreHypothesis } from './matchingScore'
+import { assignLines, explainedShare, lineEvidence, scoreHypothesis } from './matchingScore'
 import { RATIO_SPREAD } from './matchingPriors'
 import { MOST_RATIO, modeTables, type ModeTrack } from './matchingTables'
 
@@ -12,7 +12,7 @@ export interface Candidate {
   score: number
 }
 
-const SCAN_STEP = { one: 0.005, two: 0.016 }
+const SCAN_STEP = { one: 0.005, two: 0.02 }
 const SCAN_RATIO_STEP = 0.1
 /** Share of what the best hypothesis explains below which one is not scored. */
 const HOPELESS = 0.5
@@ -21,6 +21,8 @@ const LOUDEST_ABOVE_LOWEST = 12
 const LOW_ABOVE_LOWEST = 4.5
 /** The lowest mode may lie above the loudest line, when that is no tone of the head, by this ratio. */
 const LOWEST_ABOVE_LOUDEST = 1.9
+/** A hypothesis this many nats behind the best cannot catch up when both are fitted. */
+const FAR_BEHIND = 28
 /** Two candidates nearer than this in ln T are one. */
 const SEPARATE = 0.012
 const MOST_CANDIDATES = { one: 12, two: 24 }
@@ -53,13 +55,21 @@ export function scanHypotheses(context: MatchingContext, input: ScoreInput): Can
     return mode
   }
   let mostExplained = 0
+  const open: Candidate[] = []
   const consider = (lnTension: number, ratio: number, modes: ScoredMode[]) => {
     const assignment = assignLines(modes, input)
     const explained = explainedShare(input, assignment)
     mostExplained = Math.max(mostExplained, explained)
-    // Levels are the dear part of the score: a hypothesis that leaves the loud lines alone is not worth it.
     if (explained < HOPELESS * mostExplained) return
-    found.push({ lnTension, ratio, score: scoreHypothesis(modes, input, assignment) - 0.5 * (ratio / RATIO_SPREAD) ** 2 })
+    open.push({ lnTension, ratio, score: lineEvidence(modes, input, assignment) - 0.5 * (ratio / RATIO_SPREAD) ** 2 })
+  }
+  const modesAt = (lnTension: number, ratio: number, base?: ScoredMode[]) => {
+    const at = (lnTension - tables.from) / tables.step
+    const struck = base ?? tables.struck.map(scored).filter((mode, i) => read(tables.struck[i]!, at, mode))
+    if (!context.twoHeads) return struck
+    const others = tables.other.map(scored).filter((mode, i) => read(tables.other[i]!, at + ratio / tables.step, mode))
+    const r = Math.min(tables.ratios.length - 1, Math.round((ratio - tables.ratios[0]!) / (tables.ratios[1]! - tables.ratios[0]!)))
+    return [...struck, ...others, ...betweenRatios(tables.axisymmetric, tables.ratios, ratio, r, at, scored)]
   }
   const lowestFrom = Math.log(Math.max(input.loudestHz / LOUDEST_ABOVE_LOWEST, input.lowestLoudHz / LOW_ABOVE_LOWEST))
   const lowestTo = Math.log(input.loudestHz * LOWEST_ABOVE_LOUDEST)
@@ -72,14 +82,21 @@ export function scanHypotheses(context: MatchingContext, input: ScoreInput): Can
       consider(lnTension, 0, base)
       continue
     }
-    for (let ratio = -MOST_RATIO; ratio <= MOST_RATIO + 1e-9; ratio += SCAN_RATIO_STEP) {
-      const others = tables.other.map(scored).filter((mode, i) => read(tables.other[i]!, at + ratio / tables.step, mode))
-      const r = Math.min(tables.ratios.length - 1, Math.round((ratio - tables.ratios[0]!) / (tables.ratios[1]! - tables.ratios[0]!)))
-      const axisymmetric = betweenRatios(tables.axisymmetric, tables.ratios, ratio, r, at, scored)
-      consider(lnTension, ratio, [...base, ...others, ...axisymmetric])
-    }
+    for (let ratio = -MOST_RATIO; ratio <= MOST_RATIO + 1e-9; ratio += SCAN_RATIO_STEP) consider(lnTension, ratio, modesAt(lnTension, ratio, base))
   }
-  return separate(found, context.twoHeads ? MOST_CANDIDATES.two : MOST_CANDIDATES.one)
+  // Levels are the dear part of the score: once even the kindest levels seen would leave the rest this far behind, they are not asked.
+  open.sort((a, b) => b.score - a.score)
+  let best = -Infinity
+  let kindest = -Infinity
+  for (const { lnTension, ratio, score } of open) {
+    if (score + kindest < best - FAR_BEHIND) break
+    const modes = modesAt(lnTension, ratio)
+    const full = scoreHypothesis(modes, input) - 0.5 * (ratio / RATIO_SPREAD) ** 2
+    best = Math.max(best, full)
+    kindest = Math.max(kindest, full - score)
+    found.push({ lnTension, ratio, score: full })
+  }
+  return separate(found.filter(candidate => candidate.score > best - FAR_BEHIND), context.twoHeads ? MOST_CANDIDATES.two : MOST_CANDIDATES.one)
 }
 
 /** m = 0 of two heads between two knots of the ratio, straight in ln f. */

@@ -25,7 +25,7 @@ function listeningDb(m: number, zero: number): number {
 
 /** Places by r/R that a strike of this name may really have had, with their prior weights. */
 const PLACES: Record<Strike, Array<{ x: number, weight: number }>> = {
-  centre: [{ x: 0.04, weight: 1 }, { x: 0.12, weight: 1 }, { x: 0.22, weight: 0.8 }, { x: 0.35, weight: 0.5 }, { x: 0.5, weight: 0.5 }, { x: 0.62, weight: 0.3 }],
+  centre: [{ x: 0.04, weight: 1 }, { x: 0.12, weight: 1 }, { x: 0.22, weight: 0.5 }, { x: 0.35, weight: 0.1 }, { x: 0.5, weight: 0.05 }, { x: 0.62, weight: 0.02 }],
   edge: [{ x: 0.5, weight: 0.4 }, { x: 0.6, weight: 0.7 }, { x: 0.7, weight: 1 }, { x: 0.78, weight: 1 }, { x: 0.87, weight: 0.8 }],
   round: [{ x: 0.6, weight: 0.4 }, { x: 0.7, weight: 1 }, { x: 0.78, weight: 1 }, { x: 0.86, weight: 1 }],
 }

@@ -11,6 +11,8 @@ import { fitTension, stateOf, type FitEffort, type TensionFit } from './tensionF
 
 /** Candidates that are fitted in full, and the effort of the first look and of the full fit. */
 const FINALISTS = 5
+/** A first look this many nats behind the best is no finalist. */
+const OUT_OF_REACH = 25
 const FIRST_LOOK: FitEffort = { predictions: 1, rounds: 3, widen: 1, rough: true }
 const FULL_FIT: FitEffort = { predictions: 4, rounds: 4, widen: 0.5, rough: false }
 const CLOSE_FIT: FitEffort = { predictions: 4, rounds: 4, widen: 1, rough: false }
@@ -56,7 +58,7 @@ function rankedFits(context: MatchingContext, naming: MatchingContext, input: Sc
   first.sort((a, b) => b.score - a.score)
   const finalists: TensionFit[] = []
   for (const fit of first) {
-    if (finalists.length >= FINALISTS) break
+    if (finalists.length >= FINALISTS || fit.score < first[0]!.score - OUT_OF_REACH) break
     if (finalists.some(other => samePlace(other, fit))) continue
     finalists.push(fit)
   }

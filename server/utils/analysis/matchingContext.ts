@@ -9,6 +9,8 @@ export interface MatchingContext {
   key: string
   construction: Construction
   model: DrumModel
+  /** Two heads: each by itself on the closed shell, struck one first, for searches. */
+  alone: DrumModel[]
   priors: ModelPriors
   /** What the fit is told of air, edge and the maker's figures. */
   priorRows: PriorRow[]
@@ -58,10 +60,12 @@ export function matchingContext(request: ExplainRequest): MatchingContext {
   const airScale = { axisymmetric: calibration?.airScaleAxisymmetric.value ?? 1, others: calibration?.airScaleOthers.value ?? 1 }
   const edgeFactor = calibration?.edgeFactor.value ?? EDGE_MEAN
   const model = createDrumModel({ geometry: { construction, radiusM, depthM, bowlVolumeM3 }, film, otherFilm: twoHeads ? filmOf(other) : undefined, air: airAt({ temperatureC }), airScale, edgeFactor })
+  const closed = { construction: 'kettle' as const, radiusM, depthM, bowlVolumeM3: Math.PI * radiusM ** 2 * Math.max(depthM, 0.02 * radiusM) }
+  const alone = twoHeads ? [film, filmOf(other)].map(own => createDrumModel({ geometry: closed, film: own, air: airAt({ temperatureC }), airScale, edgeFactor })) : []
   const priors = modelPriors(construction)
   const otherOffset = Math.log(other.arealDensityKgM2 / struck.arealDensityKgM2)
   const made: MatchingContext = {
-    key, construction, model, film, twoHeads, priors, airScale, edgeFactor, otherOffset,
+    key, construction, model, alone, film, twoHeads, priors, airScale, edgeFactor, otherOffset,
     priorRows: priorRows({ priors, request: { instrument, temperatureC }, otherOffset, twoHeads }),
     lnTensionFrom: Math.log(LEAST_STRESS_PA * filmThicknessM(film)),
     lnTensionTo: Math.log(Math.max(ABOVE_YIELD * film.yieldPa, 40e6) * filmThicknessM(film)),

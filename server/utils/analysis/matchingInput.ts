@@ -10,6 +10,8 @@ export interface ScoredMode {
   m: number
   n: number
   other: boolean
+  /** The mode that a kettle is played for, (1,1). */
+  principal: boolean
   /** Relative standard deviation of the prediction while the air's scale is not fitted. */
   spread: number
   /** Expected level at each strike place, dB, without its dependence on frequency; and the loudest of them. */
@@ -20,11 +22,12 @@ export interface ScoredMode {
   /** What frequency alone does to the expected level, and the level a line there had to reach to be found, dB. */
   bandDb: number
   floorDb: number
-  /** Level of the line taken for this mode, dB; NaN where none was. */
+  /** Level of the line taken for this mode, dB; far below any where none was. */
   heardDb: number
-  /** Lines taken for this mode so far, and ln f of the first. */
+  /** Lines taken for this mode so far; ln f and level of the first. */
   used: number
   firstLn: number
+  firstDb: number
 }
 
 export interface ScoredLine {
@@ -96,9 +99,9 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
       const placeDb = levelsOf(track.m, track.n, track.other)
       const air = track.m === 0 ? context.priors.airAxisymmetric : context.priors.airOthers
       return {
-        m: track.m, n: track.n, other: track.other, placeDb, loudestDb: Math.max(...placeDb),
+        m: track.m, n: track.n, other: track.other, principal: context.construction === 'kettle' && track.m === 1 && track.n === 1, placeDb, loudestDb: Math.max(...placeDb),
         spread: Math.hypot(modeModelError(context.priors, track.m, track.n, false), Math.abs(track.airSensitivity) * 0.7 * air, gridSpread(context, track)),
-        lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: NaN, used: 0, firstLn: 0,
+        lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: -1e3, used: 0, firstLn: 0, firstDb: 0,
       }
     },
   }

@@ -8,58 +8,95 @@ const LOUD_STRAY_PER_DB = 0.12
 const QUIET_DB = -35
 /** Nats for all of the amplitude left unexplained. */
 const UNEXPLAINED_NATS = 20
+/** Nats that it costs to leave the principal tone of a kettle out: only a microphone on its node would not hear it. */
+const PRINCIPAL_MISSED = 8
 /** A mode is not taken for a line farther off than this many standard deviations. */
 const FARTHEST = 3.2
 /** Nats that the second line of a pair costs: most pairs are heard as one line. */
 const SECOND_LINE = 2.5
 /** Widest pair (1,1), ln: N_2 at 6 % of the mean; higher pairs split less. */
 const MOST_SPLIT = 0.032
+/** A line weaker than the first of a pair by more than this is more often a room's ripple or a player's loop than its other half, dB. */
+const MOST_UNLIKE_DB = 14
 /** How much a loud mode is preferred to a weak one that lies as near, nats per dB. */
 const LOUDER_PER_DB = 0.035
 /** Levels farther off than this many spreads count as this far: something else was at work. */
 const MOST_LEVEL_Z2 = 9
 
+/**
+ * Modes by frequency: buckets of BUCKET in ln f, each a chain of modes. The scan asks for a line's neighbours millions of
+ * times, so the chains are kept in plain arrays that each assignment fills anew.
+ */
+const BUCKET = 0.025
+const LOWEST_LN = Math.log(10)
+const BUCKETS = 300
+const firstOf = new Int16Array(BUCKETS)
+let nextOf = new Int16Array(256)
+
+const bucketOf = (lnFrequency: number) => Math.min(BUCKETS - 1, Math.max(0, Math.floor((lnFrequency - LOWEST_LN) / BUCKET)))
+
+/** Chains the modes; gives the widest spread among them. */
+function chain(modes: ScoredMode[]): number {
+  if (nextOf.length < modes.length) nextOf = new Int16Array(2 * modes.length)
+  firstOf.fill(-1)
+  let widest = 0
+  for (let k = 0; k < modes.length; k++) {
+    const mode = modes[k]!
+    const bucket = bucketOf(mode.lnFrequency)
+    mode.used = 0
+    nextOf[k] = firstOf[bucket]!
+    firstOf[bucket] = k
+    if (mode.spread > widest) widest = mode.spread
+  }
+  return widest
+}
+
 /** For each line the mode that it is taken for, or -1. A mode with m >= 1 may have two lines. */
 export function assignLines(modes: ScoredMode[], input: ScoreInput): Int16Array {
   const { lines } = input
   const assigned = new Int16Array(lines.length).fill(-1)
-  for (const mode of modes) mode.used = 0
+  const widest = chain(modes)
   for (let l = 0; l < lines.length; l++) {
     const line = lines[l]!
+    const reach = FARTHEST * (widest + line.spread) + 0.5 * MOST_SPLIT
+    const last = bucketOf(line.lnFrequency + reach)
     let best = -1
     let cost = Infinity
-    for (let k = 0; k < modes.length; k++) {
-      const mode = modes[k]!
-      const off = Math.abs(line.lnFrequency - mode.lnFrequency)
-      if (off > 0.15 || mode.used > 1 || (mode.used > 0 && mode.m === 0)) continue
-      const spread = Math.sqrt(mode.spread * mode.spread + line.spread * line.spread)
-      const z = (mode.used ? offAsPair(line, mode) : off) / spread
-      if (z > FARTHEST) continue
-      const c = 0.5 * z * z + Math.log(spread) + (mode.used ? SECOND_LINE : 0) - LOUDER_PER_DB * mode.loudestDb
-      if (c < cost) {
-        cost = c
-        best = k
+    for (let bucket = bucketOf(line.lnFrequency - reach); bucket <= last; bucket++) {
+      for (let k = firstOf[bucket]!; k >= 0; k = nextOf[k]!) {
+        const c = costOf(line, modes[k]!)
+        if (c < cost) {
+          cost = c
+          best = k
+        }
       }
     }
     if (best < 0) continue
     assigned[l] = best
-    if (modes[best]!.used++ === 0) modes[best]!.firstLn = line.lnFrequency
+    const mode = modes[best]!
+    if (mode.used++ > 0) continue
+    mode.firstLn = line.lnFrequency
+    mode.firstDb = line.levelDb
   }
   return assigned
 }
 
+/** What it costs to take a line for a mode, nats; infinite where it is too far or the mode has its lines. */
+function costOf(line: ScoredLine, mode: ScoredMode): number {
+  if (mode.used > 1 || (mode.used > 0 && mode.m === 0)) return Infinity
+  const variance = mode.spread * mode.spread + line.spread * line.spread
+  const off = mode.used ? offAsPair(line, mode) : line.lnFrequency - mode.lnFrequency
+  const z2 = off * off / variance
+  if (z2 > FARTHEST * FARTHEST) return Infinity
+  return 0.5 * z2 + 0.5 * Math.log(variance) + (mode.used ? SECOND_LINE : 0) - LOUDER_PER_DB * mode.loudestDb
+}
+
 /** How far the mean of the two lines of a pair lies from its mode, ln; infinite where no head is as uneven as their distance. */
 function offAsPair(line: ScoredLine, mode: ScoredMode): number {
-  if (Math.abs(line.lnFrequency - mode.firstLn) > MOST_SPLIT / mode.m) return Infinity
+  if (Math.abs(line.lnFrequency - mode.firstLn) > MOST_SPLIT / mode.m || line.levelDb < mode.firstDb - MOST_UNLIKE_DB) return Infinity
   return Math.abs(0.5 * (line.lnFrequency + mode.firstLn) - mode.lnFrequency)
 }
 
-/** Chance that a mode is found as a line of its own, by how far its expected level stands above the floor. */
-const STEPS_PER_SPREAD = 32
-const REACH = 4
-const aboveFloor = new Float64Array(2 * REACH * STEPS_PER_SPREAD + 1)
-// A logistic follows the normal distribution to 0.01.
-for (let i = 0; i < aboveFloor.length; i++) aboveFloor[i] = 1 / (1 + Math.exp(-1.702 * (i / STEPS_PER_SPREAD - REACH)))
 /** A weak mode may be missing for many reasons: hidden by a louder neighbour, on a node. A loud one may not. */
 const SURE = { loud: 0.985, loudDb: -8, weak: 0.35, weakDb: -32 }
 /** A mode expected to be about the loudest, and well above the floor, does not go missing: nats per dB beyond these. */
@@ -68,14 +105,36 @@ const MISSED_ABOVE_FLOOR_DB = 20
 const MISSED_PER_DB = 0.4
 const MOST_MISSED = 10
 const LEAST_CHANCE = 0.02
-const LN_LEAST_MISSED = Math.log(1 - LEAST_CHANCE)
 
-function chanceHeard(expectedDb: number, floorDb: number): number {
-  const step = Math.round(((expectedDb - floorDb) / LEVEL_SPREAD_DB + REACH) * STEPS_PER_SPREAD)
-  const share = Math.min(1, Math.max(0, (expectedDb - SURE.weakDb) / (SURE.loudDb - SURE.weakDb)))
-  const sure = SURE.weak + (SURE.loud - SURE.weak) * share
-  return Math.max(LEAST_CHANCE, sure * aboveFloor[step < 0 ? 0 : step >= aboveFloor.length ? aboveFloor.length - 1 : step]!)
+/** Table of the chance that a mode is heard: by its level above the floor, in spreads, and by its level in steps of half a dB. */
+const STEPS_PER_SPREAD = 32
+const REACH = 4
+const STEPS_PER_DB = STEPS_PER_SPREAD / LEVEL_SPREAD_DB
+const SPREADS_PER_DB = 1 / LEVEL_SPREAD_DB
+const STEPS = 2 * REACH * STEPS_PER_SPREAD + 1
+const LEVELS = 2 * (SURE.loudDb - SURE.weakDb) + 1
+const lnHeard = new Float64Array(STEPS * LEVELS)
+const lnMissed = new Float64Array(STEPS * LEVELS)
+for (let level = 0; level < LEVELS; level++) {
+  const sure = SURE.weak + (SURE.loud - SURE.weak) * level / (LEVELS - 1)
+  for (let step = 0; step < STEPS; step++) {
+    // A logistic follows the normal distribution to 0.01.
+    const above = 1 / (1 + Math.exp(-1.702 * (step / STEPS_PER_SPREAD - REACH)))
+    const chance = Math.max(LEAST_CHANCE, sure * above)
+    lnHeard[level * STEPS + step] = Math.log(chance)
+    lnMissed[level * STEPS + step] = Math.log(1 - chance)
+  }
 }
+
+/** Place in the table of a mode expected at a level, dB, over a floor, dB. */
+function chanceAt(expectedDb: number, floorDb: number): number {
+  const step = Math.round((expectedDb - floorDb) * STEPS_PER_DB + REACH * STEPS_PER_SPREAD)
+  const level = Math.round(2 * (expectedDb - SURE.weakDb))
+  return (level < 0 ? 0 : level >= LEVELS ? LEVELS - 1 : level) * STEPS + (step < 0 ? 0 : step >= STEPS ? STEPS - 1 : step)
+}
+
+/** Level of a mode that was not heard. */
+const SILENT = -1e3
 
 /** Share of the amplitude of all decaying lines that an assignment explains, 0 to 1. */
 export function explainedShare(input: ScoreInput, assignment: Int16Array): number {
@@ -89,13 +148,17 @@ export function explainedShare(input: ScoreInput, assignment: Int16Array): numbe
  * is missing, a loud stray, and amplitude left unexplained all cost.
  */
 export function scoreHypothesis(modes: ScoredMode[], input: ScoreInput, assignment = assignLines(modes, input)): number {
-  const { lines, places } = input
+  const common = lineEvidence(modes, input, assignment)
+  for (const mode of modes) input.readBand(mode)
+  return common + levelsEvidence(modes, input)
+}
+
+/** The part of the score that needs no levels of modes: no hypothesis scores higher. Leaves each mode's heardDb set. */
+export function lineEvidence(modes: ScoredMode[], input: ScoreInput, assignment: Int16Array): number {
+  const { lines } = input
   let common = 0
   let unexplained = 0
-  for (const mode of modes) {
-    mode.heardDb = NaN
-    input.readBand(mode)
-  }
+  for (const mode of modes) mode.heardDb = SILENT
   for (let l = 0; l < lines.length; l++) {
     const line = lines[l]!
     const k = assignment[l]!
@@ -106,14 +169,32 @@ export function scoreHypothesis(modes: ScoredMode[], input: ScoreInput, assignme
     }
     const mode = modes[k]!
     // Lines come loudest first: the second line of a pair says nothing more about the level.
-    if (Number.isNaN(mode.heardDb)) {
+    if (mode.heardDb === SILENT) {
       common += line.weight * frequencyEvidence(line, mode)
       mode.heardDb = line.levelDb
     } else {
       common -= line.weight * SECOND_LINE
     }
   }
-  common -= UNEXPLAINED_NATS * unexplained
+  for (const mode of modes) {
+    if (mode.principal && mode.heardDb === SILENT) common -= PRINCIPAL_MISSED
+  }
+  return common - UNEXPLAINED_NATS * unexplained
+}
+
+/** The modes' levels side by side, for the scan asks millions of times: band, floor, heard, and expected at the place at hand. */
+let sideBySide = Array.from({ length: 4 }, () => new Float64Array(256))
+
+/** What the levels add, never more than 0: marginal over the place of the strike. */
+function levelsEvidence(modes: ScoredMode[], { places }: ScoreInput): number {
+  if (sideBySide[0]!.length < modes.length) sideBySide = Array.from({ length: 4 }, () => new Float64Array(2 * modes.length))
+  const [band, floor, heard] = sideBySide as [Float64Array, Float64Array, Float64Array]
+  for (let k = 0; k < modes.length; k++) {
+    const mode = modes[k]!
+    band[k] = mode.bandDb
+    floor[k] = mode.floorDb
+    heard[k] = mode.heardDb
+  }
   let best = -Infinity
   let sum = 0
   for (let p = 0; p < places.length; p++) {
@@ -125,7 +206,7 @@ export function scoreHypothesis(modes: ScoredMode[], input: ScoreInput, assignme
       sum += Math.exp(score - best)
     }
   }
-  return common + best + Math.log(sum)
+  return best + Math.log(sum)
 }
 
 function frequencyEvidence(line: ScoredLine, mode: ScoredMode): number {
@@ -136,30 +217,35 @@ function frequencyEvidence(line: ScoredLine, mode: ScoredMode): number {
 
 /** Evidence of one strike place: the levels of the lines found, and which modes were and were not heard. */
 function levelEvidence(modes: ScoredMode[], p: number): number {
+  const [band, floor, heard, expected] = sideBySide as [Float64Array, Float64Array, Float64Array, Float64Array]
+  const count = modes.length
   let weight = 0.15
   let offset = 0
   let loudest = -Infinity
-  for (const mode of modes) {
-    const expected = mode.placeDb[p]! + mode.bandDb
-    loudest = Math.max(loudest, expected)
-    if (Number.isNaN(mode.heardDb)) continue
+  for (let k = 0; k < count; k++) {
+    const level = modes[k]!.placeDb[p]! + band[k]!
+    expected[k] = level
+    if (level > loudest) loudest = level
+    const h = heard[k]!
+    if (!(h > SILENT)) continue
     weight += 1
-    offset += mode.heardDb - expected
+    offset += h - level
   }
   // With few lines the loudest expected mode is taken to be the loudest line.
   offset = (offset - 0.15 * loudest) / weight
   let sum = 0
-  for (const mode of modes) {
-    const expected = mode.placeDb[p]! + mode.bandDb + offset
-    const heard = chanceHeard(expected, mode.floorDb)
-    if (Number.isNaN(mode.heardDb)) {
-      sum += heard === LEAST_CHANCE ? LN_LEAST_MISSED : Math.log(1 - heard)
-      const over = Math.min(expected, expected - mode.floorDb - MISSED_ABOVE_FLOOR_DB) - MISSED_FROM_DB
-      if (over > 0) sum -= Math.min(MOST_MISSED, MISSED_PER_DB * over)
+  for (let k = 0; k < count; k++) {
+    const level = expected[k]! + offset
+    const at = chanceAt(level, floor[k]!)
+    const h = heard[k]!
+    if (h > SILENT) {
+      const z = (h - level) * SPREADS_PER_DB
+      sum += lnHeard[at]! - 0.5 * Math.min(z * z, MOST_LEVEL_Z2)
       continue
     }
-    const z = (mode.heardDb - expected) / LEVEL_SPREAD_DB
-    sum += Math.log(heard) - 0.5 * Math.min(z * z, MOST_LEVEL_Z2)
+    sum += lnMissed[at]!
+    const over = Math.min(level, level - floor[k]! - MISSED_ABOVE_FLOOR_DB) - MISSED_FROM_DB
+    if (over > 0) sum -= Math.min(MOST_MISSED, MISSED_PER_DB * over)
   }
   return sum
 }

@@ -1,4 +1,4 @@
-import type { PredictedMode } from '../../../shared/acoustics'
+import type { DrumModel, PredictedMode } from '../../../shared/acoustics'
 import type { MatchingContext } from './matchingContext'
 
 /** Knots of ln T: between them ln f is straight to a few parts in 10^5, away from resonances of the shell's air. */
@@ -73,9 +73,11 @@ export function modeTables(context: MatchingContext, maxHz: number): ModeTables 
     made.struck = tracks(knots, i => at(i, 0, orders), () => true)
   } else {
     const upper = orders.slice(1)
-    // Far apart in tension the two heads' modes hardly know of each other: take each head beside a slack partner.
-    made.struck = tracks(knots, i => at(i, 0.7, upper), mode => mode.head === 'struck')
-    made.other = tracks(knots, i => model.predictModes({ tensionNPerM: tension(i) * Math.exp(0.7), otherTensionNPerM: tension(i) * Math.exp(otherOffset), maxHz, nodalDiameters: upper, rough: true }), mode => mode.head === 'other')
+    // Modes with nodal diameters hardly know of the other head: a search may take each head alone on the closed shell.
+    const [struck, other] = context.alone
+    const byItself = (head: DrumModel, tensionNPerM: number) => head.predictModes({ tensionNPerM, maxHz, nodalDiameters: upper, rough: true })
+    made.struck = tracks(knots, i => byItself(struck!, tension(i)), () => true)
+    made.other = tracks(knots, i => byItself(other!, tension(i) * Math.exp(otherOffset)).map(mode => ({ ...mode, head: 'other' as const })), () => true)
     for (let ratio = -MOST_RATIO; ratio <= MOST_RATIO + 1e-9; ratio += RATIO_STEP) {
       made.ratios.push(ratio)
       made.axisymmetric.push(axisymmetricTracks(knots, i => at(i, ratio, [0])))

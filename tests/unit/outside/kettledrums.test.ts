@@ -11,8 +11,8 @@ import { renderNote, requirePackages } from './soundfont'
 const KETTLEDRUM = 47
 
 /**
- * A 26 in kettle, whose usual range covers these notes, a bowl of 1.1 pi R^3 and a film of 200 um: nobody knows the drum
- * that was recorded. Of the films tried (190 to 250 um) this one fits every note: with 190 um thirteen of the fourteen
+ * A 26 in kettle, whose usual range covers these notes, a bowl of 1.1 pi R^3 and a film of 210 um: nobody knows the drum
+ * that was recorded. Of the films tried (190 to 250 um) this one fits every note: with 190 um at least twelve of the fourteen
  * are named alike and the other, note 47, is marked doubtful.
  */
 const RADIUS_M = 26 * 0.0254 / 2
@@ -22,7 +22,7 @@ const KETTLE: AnalysedInstrument = {
   depthM: 0,
   bowlVolumeM3: 1.1 * Math.PI * RADIUS_M ** 3,
   rodCount: 8,
-  heads: [{ side: 'batter', material: 'pet', plies: 1, plyThicknessM: 200e-6, filmDensityKgM3: 1390, modulusPa: 4.5e9, poisson: 0.38, yieldPa: 100e6, arealDensityKgM2: 0.278 }],
+  heads: [{ side: 'batter', material: 'pet', plies: 1, plyThicknessM: 210e-6, filmDensityKgM3: 1390, modulusPa: 4.5e9, poisson: 0.38, yieldPa: 100e6, arealDensityKgM2: 0.292 }],
 }
 
 function read(note: number, instrument = KETTLE): AnalysedReading {
