@@ -67,7 +67,7 @@ function predict(options: DrumModelOptions, air: GroupAir[], at: PredictOptions)
       airScale: m === 0 ? scale.axisymmetric : scale.others,
       edgeFactor: at.edgeFactor ?? options.edgeFactor ?? DEFAULT_EDGE_FACTOR,
     }
-    modes.push(...groupModes(group, state, at.maxHz ?? Infinity, at.rough))
+    modes.push(...groupModes(group, state, { maxHz: at.maxHz ?? Infinity, rough: at.rough, airModes: at.airModes }))
   }
   return modes.sort((a, b) => a.frequencyHz - b.frequencyHz)
 }

@@ -61,16 +61,19 @@ function followByOverlap(matrices: GroupMatrices, start: EigenPair): EigenPair {
   return pair
 }
 
+export interface GroupOptions { maxHz: number, rough?: boolean, airModes?: boolean }
+
 /**
  * Modes of one m with air, bending, edge, cavity and coupling: each at its own self-consistent frequency.
  *
  * Source: physics.md sections 2 to 4; Rayleigh quotient iteration: Golub & Van Loan, section 8.2.
  * @param air    the air of the construction for this m
  * @param state  heads, radius, air and scales
- * @param maxHz  modes above are left out, Hz
- * @param rough  shapes stay those of a middling frequency: frequencies are then good to 0.1 % and decay rates to a tenth
+ * @param options.maxHz  modes above are left out, Hz
+ * @param options.rough  shapes stay those of a middling frequency: frequencies are then good to 0.1 % and decay rates to a tenth
+ * @param options.airModes  give the air's own resonances too
  */
-export function groupModes(air: GroupAir, state: GroupState, maxHz: number, rough = false): PredictedMode[] {
+export function groupModes(air: GroupAir, state: GroupState, { maxHz, rough = false, airModes = false }: GroupOptions): PredictedMode[] {
   const matrices = new GroupMatrices(air, state)
   const { size, stiffness } = matrices
   const mass = new Float64Array(size * size)
@@ -97,14 +100,16 @@ export function groupModes(air: GroupAir, state: GroupState, maxHz: number, roug
     if (known || Math.abs(quadratic(size, mass, start.x, pair.x)) < 0.7) pair = followByOverlap(matrices, start)
     pairs.push(pair)
   }
-  return label(matrices, pairs, rough ? [] : starts, rough).filter(mode => mode.frequencyHz <= maxHz)
+  const { modes, rest } = label(matrices, pairs, rough ? [] : starts, rough)
+  if (airModes) modes.push(...airResonances(matrices, rest))
+  return modes.filter(mode => mode.frequencyHz <= maxHz)
 }
 
 /** A mode is not named after a shape that holds less than this of what its strongest shape holds. */
 const LEAST_CLAIM = 0.1
 
-/** Gives every shape of every head the mode that moves it most; the air's own modes stay unnamed and are left out. */
-function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[], rough: boolean): PredictedMode[] {
+/** Gives every shape of every head the mode that moves it most; the rest are the air's own. */
+function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[], rough: boolean): { modes: PredictedMode[], rest: EigenPair[] } {
   const { shapes } = matrices
   const claims: Array<{ pair: EigenPair, shape: number, share: number }> = []
   for (const pair of pairs) {
@@ -126,5 +131,22 @@ function label(matrices: GroupMatrices, pairs: EigenPair[], starts: EigenPair[],
     usedShapes.add(claim.shape)
     modes.push(describeMode(matrices, claim.pair, claim.shape, starts, rough))
   }
-  return modes
+  return { modes, rest: pairs.filter(pair => !usedPairs.has(pair)) }
+}
+
+/** An air resonance with less of its energy in the films is not heard through them. */
+const LEAST_FILM_SHARE = 0.003
+
+/** The air's own resonances as modes without a number of nodal circles. */
+function airResonances(matrices: GroupMatrices, rest: EigenPair[]): PredictedMode[] {
+  const { shapes } = matrices
+  const found: PredictedMode[] = []
+  for (const pair of [...rest].sort((a, b) => a.omegaSquared - b.omegaSquared)) {
+    const energies = Array.from({ length: shapes }, (_, i) => pair.x[i]! ** 2 * matrices.headStiffness[i]! / pair.omegaSquared)
+    const filmShare = energies.reduce((sum, share) => sum + share, 0)
+    if (filmShare < LEAST_FILM_SHARE) continue
+    const strongest = energies.indexOf(Math.max(...energies))
+    found.push({ ...describeMode(matrices, pair, strongest, [], true), n: 0, air: { index: found.length, filmShare } })
+  }
+  return found
 }

@@ -73,8 +73,10 @@ export interface ModeSensitivity {
 export interface PredictedMode {
   /** Nodal diameters, >= 0. */
   m: number
-  /** Nodal circles, the rim counted, >= 1. */
+  /** Nodal circles, the rim counted, >= 1; 0 for a resonance of the shell's air that carries a head along. */
   n: number
+  /** Resonances of the shell's air only: number within its m, in order of frequency, and share of its energy in the films. */
+  air?: { index: number, filmShare: number }
   /** The head that moves most. */
   head: 'struck' | 'other'
   /** Undamped frequency sqrt(omega_d^2 + gamma^2) / (2 pi) with air, bending and edge, Hz; radiation moves it a little. */
@@ -107,6 +109,8 @@ export interface PredictOptions {
   edgeFactor?: number
   /** Several times faster, frequencies good to 0.1 %: for searches. */
   rough?: boolean
+  /** Give resonances of the shell's air too, as far as they carry a head along. */
+  airModes?: boolean
   /** Only these nodal diameters; all where left out. */
   nodalDiameters?: readonly number[]
 }

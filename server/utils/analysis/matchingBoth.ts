@@ -127,7 +127,7 @@ const sideOf = (mode: MatchedMode, tapped: HeadSide): HeadSide => ((mode.head ==
 /** One of the two tones (0,1), as the louder tap heard it, and as predicted. */
 function pairTone(best: BothFit, modes: MatchedMode[], branch: 'in-phase' | 'against'): PairTone {
   const heard = modes.filter(mode => mode.n === 1 && mode.branch === branch).reduce<MatchedMode | null>((a, b) => (!a || b.levelDb > a.levelDb ? b : a), null)
-  const lowest = best.heard[0]!.modes.filter(mode => mode.m === 0).slice(0, 2)
+  const lowest = best.heard[0]!.modes.filter(mode => mode.m === 0 && !mode.air).slice(0, 2)
   const predicted = lowest.find(mode => (Math.sign(mode.struckShape[0]! * (mode.otherShape[0] ?? 0)) >= 0) === (branch === 'in-phase')) ?? lowest[branch === 'in-phase' ? 0 : 1]
   return { measuredHz: heard?.measuredHz ?? null, predictedHz: predicted?.frequencyHz ?? heard?.predictedHz ?? 0 }
 }

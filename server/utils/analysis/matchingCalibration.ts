@@ -56,7 +56,7 @@ function knownRow(target: number, { value, standard }: Measured) {
 function modeRows(context: MatchingContext, modes: MatchedMode[], state: FitState): FitRow[] {
   const predicted = predictAt(context, state, 1.3 * Math.max(...modes.map(mode => mode.measuredHz)), false)
   return modes.flatMap((mode): FitRow[] => {
-    const twin = predicted.find(p => p.m === mode.m && p.n === mode.n && (p.head === 'other') === (mode.head === 'other'))
+    const twin = predicted.find(p => !p.air && p.m === mode.m && p.n === mode.n && (p.head === 'other') === (mode.head === 'other'))
     if (!twin) return []
     const undamped = Math.hypot(mode.measuredHz, LN_1000 / mode.t60S / (2 * Math.PI))
     const noise = mode.u95Hz / 2 / mode.measuredHz

@@ -4,12 +4,15 @@ import type { LineFindings, SpectralLine } from './lines'
 import type { MatchingContext } from './matchingContext'
 import { modeModelError } from './matchingPriors'
 import type { ModeTrack } from './matchingTables'
+import type { Strike } from './types'
 
 /** One predicted mode while hypotheses are scored; what follows `placeDb` is set anew for each hypothesis. */
 export interface ScoredMode {
   m: number
   n: number
   other: boolean
+  /** A resonance of the shell's air: it may be heard, and need not be. */
+  air: boolean
   /** The mode that a kettle is played for, (1,1). */
   principal: boolean
   /** Relative standard deviation of the prediction while the air's scale is not fitted. */
@@ -43,9 +46,12 @@ export interface ScoredLine {
   weight: number
 }
 
+export type DescribedTrack = Pick<ModeTrack, 'm' | 'n' | 'other' | 'filmShare' | 'airSensitivity'>
+
 export interface ScoreInput {
   /** Loudest first. */
   lines: ScoredLine[]
+  strike: Strike
   places: StrikePlace[]
   maxHz: number
   loudestHz: number
@@ -53,7 +59,7 @@ export interface ScoreInput {
   lowestLoudHz: number
   /** Sets bandDb and floorDb from lnFrequency. */
   readBand: (mode: ScoredMode) => void
-  describe: (track: Pick<ModeTrack, 'm' | 'n' | 'other' | 'airSensitivity'>) => ScoredMode
+  describe: (track: DescribedTrack) => ScoredMode
 }
 
 /** A width that is off by the room, the finger or a neighbour: share of the half-width that frequency may be off by. */
@@ -81,26 +87,28 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
     if (lines.some((louder, k) => k < l && Math.abs(louder.lnFrequency - line.lnFrequency) < COMPANION)) line.weight = COMPANION_WEIGHT
   })
   const levels = new Map<string, Float64Array>()
-  const levelsOf = (m: number, n: number, other: boolean) => {
-    const name = `${m},${n},${other}`
+  const levelsOf = (m: number, n: number, other: boolean, filmShare: number) => {
+    const name = `${m},${n},${other},${filmShare.toPrecision(2)}`
     const known = levels.get(name)
     if (known) return known
-    const made = Float64Array.from(places, place => placeLevelDb(m, n, place.x, other, damped))
+    // Struck and heard through the film: both fall with the root of its share.
+    const made = Float64Array.from(places, place => placeLevelDb(m, Math.max(n, 1), place.x, other, damped) + 20 * Math.log10(filmShare))
     levels.set(name, made)
     return made
   }
   return {
-    lines, places,
+    lines, places, strike: request.strike,
     maxHz: Math.min(findings.toHz, HIGHEST_HZ),
     loudestHz: lines[0]?.line.frequencyHz ?? 100,
     lowestLoudHz: Math.min(...lines.filter(line => line.levelDb > (lines[0]?.levelDb ?? 0) - LOUD_WITHIN_DB).map(line => line.line.frequencyHz)),
     readBand: bandReader(findings),
     describe: (track) => {
-      const placeDb = levelsOf(track.m, track.n, track.other)
+      const placeDb = levelsOf(track.m, track.n, track.other, track.filmShare)
+      const own = track.n === 0 ? context.priors.airResonanceError : modeModelError(context.priors, track.m, track.n, false)
       const air = track.m === 0 ? context.priors.airAxisymmetric : context.priors.airOthers
       return {
-        m: track.m, n: track.n, other: track.other, principal: context.construction === 'kettle' && track.m === 1 && track.n === 1, placeDb, loudestDb: Math.max(...placeDb),
-        spread: Math.hypot(modeModelError(context.priors, track.m, track.n, false), Math.abs(track.airSensitivity) * 0.7 * air, gridSpread(context, track)),
+        m: track.m, n: track.n, other: track.other, air: track.n === 0, principal: context.construction === 'kettle' && track.m === 1 && track.n === 1, placeDb, loudestDb: Math.max(...placeDb),
+        spread: Math.hypot(own, Math.abs(track.airSensitivity) * 0.7 * air, gridSpread(context, track)),
         lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: -1e3, used: 0, firstLn: 0, firstDb: 0,
       }
     },

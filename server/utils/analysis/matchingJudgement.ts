@@ -42,7 +42,7 @@ export function budgetAndConfidence({ context, fits, request, strained }: ToJudg
   const different = Math.max(DIFFERENT, LOOSE_AIR * namingPriors(context.construction).airOthers)
   const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > different)
   const odds = rival ? Math.exp(TEMPER * (best.score - rival.score)) : Infinity
-  const few = trusted.length < 2
+  const few = trusted.filter(match => !match.mode.air).length < 2
   const unsound = strained || lowestMissing(best, trusted, request)
   const poor = unsound || budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_EXPLAINED
   const fitQuality = Math.min(1, explained / 0.9) * (few || unsound ? 0.5 : 1) * Math.min(1, 1.6 / Math.max(budget.scatter, 1e-3))
@@ -67,7 +67,7 @@ function twoHeadsOf(context: MatchingContext, best: TensionFit, budget: TensionB
   const variance = best.covariance[UNKNOWN.other * UNKNOWNS + UNKNOWN.other]!
   const other = { nPerM: best.otherTensionNPerM, u95NPerM: studentT95(30) * Math.sqrt(variance) * Math.max(1, budget.scatter) * best.otherTensionNPerM }
   const struck = request.side
-  const lowest = best.modes.filter(mode => mode.m === 0).slice(0, 2)
+  const lowest = best.modes.filter(mode => mode.m === 0 && !mode.air).slice(0, 2)
   const unsure: TwoHeads['unsure'] = []
   if (budget.u95NPerM > UNSURE_STRUCK * best.tensionNPerM) unsure.push(struck)
   if (other.u95NPerM > UNSURE_OTHER * other.nPerM) unsure.push(struck === 'batter' ? 'resonant' : 'batter')
@@ -78,7 +78,7 @@ function twoHeadsOf(context: MatchingContext, best: TensionFit, budget: TensionB
 /** A tap with nothing resting on the centre sounds the lowest (0,1); a bowl alone may swallow it. A reading without it stands on one leg. */
 function lowestMissing(best: TensionFit, trusted: MatchedLines[], request: ExplainRequest): boolean {
   if (request.instrument.construction === 'kettle' || (request.centreDamped && request.strike !== 'centre')) return false
-  const lowest = best.modes.find(mode => mode.m === 0)
+  const lowest = best.modes.find(mode => mode.m === 0 && !mode.air)
   return lowest !== undefined && !trusted.some(match => match.mode === lowest)
 }
 

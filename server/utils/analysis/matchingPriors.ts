@@ -12,6 +12,8 @@ export interface ModelPriors {
   axisymmetricError: number
   /** The same for m >= 1. */
   othersError: number
+  /** The same for a resonance of the shell's own air: a mouth's end, a bowl's shape. */
+  airResonanceError: number
 }
 
 /**
@@ -19,11 +21,11 @@ export interface ModelPriors {
  * and the coupling of two heads are the maker's own; each instrument's readings will narrow them.
  */
 const PRIORS: Record<Construction, ModelPriors> = {
-  'fixture': { airAxisymmetric: 0.02, airOthers: 0.01, edgeFactor: 0.2, axisymmetricError: 0.001, othersError: 0.0007 },
-  'frame': { airAxisymmetric: 0.03, airOthers: 0.015, edgeFactor: 0.2, axisymmetricError: 0.001, othersError: 0.0007 },
-  'open': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.005, othersError: 0.001 },
-  'kettle': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.004, othersError: 0.001 },
-  'double-headed': { airAxisymmetric: 0.08, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.003, othersError: 0.0012 },
+  'fixture': { airAxisymmetric: 0.02, airOthers: 0.01, edgeFactor: 0.2, axisymmetricError: 0.001, othersError: 0.0007, airResonanceError: 0.02 },
+  'frame': { airAxisymmetric: 0.03, airOthers: 0.015, edgeFactor: 0.2, axisymmetricError: 0.001, othersError: 0.0007, airResonanceError: 0.02 },
+  'open': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.005, othersError: 0.001, airResonanceError: 0.02 },
+  'kettle': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.004, othersError: 0.001, airResonanceError: 0.02 },
+  'double-headed': { airAxisymmetric: 0.08, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.003, othersError: 0.0012, airResonanceError: 0.02 },
 }
 
 /** How far the model may be off for this construction: standard deviations of natural logarithms, dimensionless. */
@@ -36,7 +38,7 @@ export function modelPriors(construction: Construction): ModelPriors {
  * for the figure only where they fit what was named.
  */
 const NAMING: Partial<Record<Construction, ModelPriors>> = {
-  kettle: { airAxisymmetric: 0.15, airOthers: 0.1, edgeFactor: 0.2, axisymmetricError: 0.01, othersError: 0.006 },
+  kettle: { airAxisymmetric: 0.15, airOthers: 0.1, edgeFactor: 0.2, axisymmetricError: 0.01, othersError: 0.006, airResonanceError: 0.02 },
 }
 
 /** How far a real drum of this construction may be from its model, for telling which line is which mode: as modelPriors. */

@@ -8,13 +8,14 @@ const TRUSTED = 0.1
 /** Weaker peaks are of no interest, dB against the strongest line. */
 const LEAST_LEVEL_DB = -45
 const LONGEST_T60_S = 60
+const AIR_CAUSE = 'the air in the shell'
 const MAINS_HZ = [50, 60]
 
 const t60 = (gammaPerS: number) => Math.min(LONGEST_T60_S, t60FromGamma(Math.max(gammaPerS, 1e-6)))
 
 /** The modes of a fit as the reading shows them, in order of frequency. */
 export function matchedModes(matched: MatchedLines[]): MatchedMode[] {
-  const shown = matched.filter(match => match.weight >= TRUSTED).map(({ mode, lines, noise }): MatchedMode => {
+  const shown = matched.filter(match => match.weight >= TRUSTED && !match.mode.air).map(({ mode, lines, noise }): MatchedMode => {
     const strongest = lines.reduce((a, b) => (b.levelDb > a.levelDb ? b : a)).line
     const measuredHz = lines.reduce((sum, line) => sum + line.line.frequencyHz, 0) / lines.length
     const undamped = Math.max(mode.frequencyHz ** 2 - (strongest.gammaPerS / (2 * Math.PI)) ** 2, 0)
@@ -47,8 +48,10 @@ function causeOf(frequencyHz: number, steady: boolean): string | undefined {
 
 /** Lines that no mode of the fit explains. */
 export function unexplainedPeaks(fit: TensionFit, findings: LineFindings): UnexplainedPeak[] {
-  const used = new Set(fit.matched.filter(match => match.weight >= TRUSTED).flatMap(match => match.lines.map(line => line.line)))
+  const linesOf = (air: boolean) => new Set(fit.matched.filter(match => match.weight >= TRUSTED && (match.mode.air !== undefined) === air).flatMap(match => match.lines.map(line => line.line)))
+  const used = linesOf(false)
+  const ofAir = linesOf(true)
   return findings.lines
     .filter(line => !used.has(line) && (line.steady || line.levelDb > LEAST_LEVEL_DB))
-    .map(line => ({ frequencyHz: line.frequencyHz, levelDb: line.levelDb, t60S: t60(line.gammaPerS), u95Hz: 2 * line.standardErrorHz, cause: causeOf(line.frequencyHz, line.steady) }))
+    .map(line => ({ frequencyHz: line.frequencyHz, levelDb: line.levelDb, t60S: t60(line.gammaPerS), u95Hz: 2 * line.standardErrorHz, cause: ofAir.has(line) ? AIR_CAUSE : causeOf(line.frequencyHz, line.steady) }))
 }

@@ -1,5 +1,6 @@
 import { LEVEL_SPREAD_DB } from './levels'
 import type { ScoredLine, ScoredMode, ScoreInput } from './matchingInput'
+import type { Strike } from './types'
 
 /** Lines that belong to nothing: this many per unit of ln f. */
 const STRAY_DENSITY = 1.2
@@ -8,7 +9,7 @@ const LOUD_STRAY_PER_DB = 0.12
 const QUIET_DB = -35
 /** Nats for all of the amplitude left unexplained. */
 const UNEXPLAINED_NATS = 20
-/** Nats that it costs to leave the principal tone of a kettle out: only a microphone on its node would not hear it. */
+/** Nats that it costs to leave the tone out that a strike is sure to sound: only a microphone on its node would not hear it. */
 const PRINCIPAL_MISSED = 8
 /** A mode is not taken for a line farther off than this many standard deviations. */
 const FARTHEST = 3.2
@@ -176,24 +177,33 @@ export function lineEvidence(modes: ScoredMode[], input: ScoreInput, assignment:
       common -= line.weight * SECOND_LINE
     }
   }
-  for (const mode of modes) {
-    if (mode.principal && mode.heardDb === SILENT) common -= PRINCIPAL_MISSED
-  }
+  if (principalMissing(modes, input.strike)) common -= PRINCIPAL_MISSED
   return common - UNEXPLAINED_NATS * unexplained
 }
 
-/** The modes' levels side by side, for the scan asks millions of times: band, floor, heard, and expected at the place at hand. */
-let sideBySide = Array.from({ length: 4 }, () => new Float64Array(256))
+/** The modes' levels side by side, for the scan asks millions of times: band, floor, heard, expected at the place at hand, and which need not be heard. */
+let sideBySide = Array.from({ length: 5 }, () => new Float64Array(256))
+
+/** A kettle is played for (1,1), and a tap at the centre sounds the lowest mode without nodal diameters: true where that was not heard. */
+function principalMissing(modes: ScoredMode[], strike: Strike): boolean {
+  let lowest: ScoredMode | undefined
+  for (const mode of modes) {
+    if (mode.principal && mode.heardDb === SILENT) return true
+    if (mode.m === 0 && !mode.air && (!lowest || mode.lnFrequency < lowest.lnFrequency)) lowest = mode
+  }
+  return strike === 'centre' && lowest !== undefined && lowest.heardDb === SILENT
+}
 
 /** What the levels add, never more than 0: marginal over the place of the strike. */
 function levelsEvidence(modes: ScoredMode[], { places }: ScoreInput): number {
-  if (sideBySide[0]!.length < modes.length) sideBySide = Array.from({ length: 4 }, () => new Float64Array(2 * modes.length))
-  const [band, floor, heard] = sideBySide as [Float64Array, Float64Array, Float64Array]
+  if (sideBySide[0]!.length < modes.length) sideBySide = Array.from({ length: 5 }, () => new Float64Array(2 * modes.length))
+  const [band, floor, heard, , optional] = sideBySide as [Float64Array, Float64Array, Float64Array, Float64Array, Float64Array]
   for (let k = 0; k < modes.length; k++) {
     const mode = modes[k]!
     band[k] = mode.bandDb
     floor[k] = mode.floorDb
     heard[k] = mode.heardDb
+    optional[k] = mode.air ? 1 : 0
   }
   let best = -Infinity
   let sum = 0
@@ -217,7 +227,7 @@ function frequencyEvidence(line: ScoredLine, mode: ScoredMode): number {
 
 /** Evidence of one strike place: the levels of the lines found, and which modes were and were not heard. */
 function levelEvidence(modes: ScoredMode[], p: number): number {
-  const [band, floor, heard, expected] = sideBySide as [Float64Array, Float64Array, Float64Array, Float64Array]
+  const [band, floor, heard, expected, optional] = sideBySide as [Float64Array, Float64Array, Float64Array, Float64Array, Float64Array]
   const count = modes.length
   let weight = 0.15
   let offset = 0
@@ -225,7 +235,7 @@ function levelEvidence(modes: ScoredMode[], p: number): number {
   for (let k = 0; k < count; k++) {
     const level = modes[k]!.placeDb[p]! + band[k]!
     expected[k] = level
-    if (level > loudest) loudest = level
+    if (level > loudest && optional[k] === 0) loudest = level
     const h = heard[k]!
     if (!(h > SILENT)) continue
     weight += 1
@@ -243,6 +253,7 @@ function levelEvidence(modes: ScoredMode[], p: number): number {
       sum += lnHeard[at]! - 0.5 * Math.min(z * z, MOST_LEVEL_Z2)
       continue
     }
+    if (optional[k] === 1) continue
     sum += lnMissed[at]!
     const over = Math.min(level, level - floor[k]! - MISSED_ABOVE_FLOOR_DB) - MISSED_FROM_DB
     if (over > 0) sum -= Math.min(MOST_MISSED, MISSED_PER_DB * over)

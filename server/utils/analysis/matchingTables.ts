@@ -15,6 +15,8 @@ export interface ModeTrack {
   m: number
   n: number
   other: boolean
+  /** Share of its energy in the film, of a resonance of the shell's air; 1 for a mode of a head. */
+  filmShare: number
   lnFrequency: Float64Array
   damping: Float64Array
   /** d ln f / d ln(air scale), at the middle knot. */
@@ -42,14 +44,15 @@ function tracks(knots: number, at: (i: number) => PredictedMode[], keep: (mode: 
   for (let i = 0; i < knots; i++) {
     for (const mode of at(i)) {
       if (!keep(mode)) continue
-      const name = `${mode.m},${mode.n},${mode.head}`
+      const name = `${mode.m},${mode.n},${mode.head},${mode.air?.index}`
       let track = made.get(name)
       if (!track) {
-        track = { m: mode.m, n: mode.n, other: mode.head === 'other', lnFrequency: new Float64Array(knots).fill(NaN), damping: new Float64Array(knots), airSensitivity: mode.sensitivity.lnAirScale }
+        track = { m: mode.m, n: mode.n, other: mode.head === 'other', filmShare: mode.air?.filmShare ?? 1, lnFrequency: new Float64Array(knots).fill(NaN), damping: new Float64Array(knots), airSensitivity: mode.sensitivity.lnAirScale }
         made.set(name, track)
       }
       track.lnFrequency[i] = Math.log(mode.frequencyHz)
       track.damping[i] = mode.radiationDampingPerS
+      track.filmShare = Math.max(track.filmShare, mode.air?.filmShare ?? 1)
       if (i === knots >> 1) track.airSensitivity = mode.sensitivity.lnAirScale
     }
   }
@@ -66,7 +69,7 @@ export function modeTables(context: MatchingContext, maxHz: number): ModeTables 
   const tension = (i: number) => Math.exp(lnTensionFrom + i * step)
   const orders = Array.from({ length: HIGHEST_M + 1 }, (_, m) => m)
   const at = (i: number, ratio: number, nodalDiameters: number[]) => model.predictModes({
-    tensionNPerM: tension(i), otherTensionNPerM: tension(i) * Math.exp(otherOffset + ratio), maxHz, nodalDiameters, rough: true,
+    tensionNPerM: tension(i), otherTensionNPerM: tension(i) * Math.exp(otherOffset + ratio), maxHz, nodalDiameters, rough: true, airModes: !twoHeads,
   })
   const made: ModeTables = { from: lnTensionFrom, step, knots, struck: [], other: [], axisymmetric: [], ratios: [] }
   if (!twoHeads) {

@@ -74,7 +74,7 @@ export function stateFrom({ airScale, edgeFactor }: MatchingContext, lnTension: 
 /** Modes at a state, with the inputs as stated; maxHz in Hz. */
 export function predictAt(context: MatchingContext, state: FitState, maxHz: number, rough: boolean): PredictedMode[] {
   return context.model.predictModes({
-    tensionNPerM: Math.exp(state.lnTension), otherTensionNPerM: Math.exp(state.lnOther), maxHz, nodalDiameters: ORDERS, rough,
+    tensionNPerM: Math.exp(state.lnTension), otherTensionNPerM: Math.exp(state.lnOther), maxHz, nodalDiameters: ORDERS, rough, airModes: true,
     airScale: { axisymmetric: Math.exp(state.lnAir[0]), others: Math.exp(state.lnAir[1]) }, edgeFactor: state.edge,
   })
 }
@@ -82,8 +82,8 @@ export function predictAt(context: MatchingContext, state: FitState, maxHz: numb
 /** Predicted modes ready to be scored; widen is the share of the scan's tolerance. */
 export function scoredModes(context: MatchingContext, modes: PredictedMode[], input: ScoreInput, widen: number): ScoredMode[] {
   return modes.map((mode) => {
-    const scored = input.describe({ m: mode.m, n: mode.n, other: mode.head === 'other', airSensitivity: mode.sensitivity.lnAirScale })
-    const own = modeModelError(context.priors, mode.m, mode.n, false)
+    const scored = input.describe({ m: mode.m, n: mode.n, other: mode.head === 'other', filmShare: mode.air?.filmShare ?? 1, airSensitivity: mode.sensitivity.lnAirScale })
+    const own = mode.air ? context.priors.airResonanceError : modeModelError(context.priors, mode.m, mode.n, false)
     return { ...scored, lnFrequency: Math.log(mode.frequencyHz), damping: mode.radiationDampingPerS, spread: own * (1 - widen) + scored.spread * widen }
   })
 }
@@ -99,7 +99,7 @@ export function matchedLines(context: MatchingContext, modes: PredictedMode[], i
     const mode = modes[k]!
     const measured = lines.reduce((sum, line) => sum + line.lnFrequency, 0) / lines.length
     const noise = Math.sqrt(lines.reduce((sum, line) => sum + line.spread ** 2, 0)) / lines.length
-    const modelError = modeModelError(context.priors, mode.m, mode.n, lines.length > 1)
+    const modelError = mode.air ? context.priors.airResonanceError : modeModelError(context.priors, mode.m, mode.n, lines.length > 1)
     const residual = measured - Math.log(mode.frequencyHz)
     const z = residual / Math.hypot(noise, modelError)
     return { mode, lines, residual, noise, modelError, weight: 1 / (1 + Math.exp(0.5 * (z * z - OUTLIER_Z * OUTLIER_Z))) }
