@@ -47,7 +47,7 @@ export const explainLines: ExplainLines = (findings, request): Explanation => {
     ...judged,
     fundamentalHz: heard ? heard.lines[0]!.line.frequencyHz : lowest?.frequencyHz ?? context.model.fundamentalHz(best.tensionNPerM, best.otherTensionNPerM),
     modes: matchedModes(best.matched),
-    unexplained: unexplainedPeaks(best, findings),
+    unexplained: unexplainedPeaks(best, findings, request.side),
   }
 }
 

@@ -65,14 +65,14 @@ function storedFindings({ reading }: TappedReading): LineFindings {
     ({ frequencyHz, standardErrorHz, amplitude: 10 ** (levelDb / 20), levelDb, gammaPerS: LN_1000 / t60S, phaseRad: 0, steady: false })
   const lines = [
     ...reading.modes.flatMap(mode => (mode.splitHz ?? [mode.measuredHz]).map(hz => line(hz, mode.u95Hz / 2, mode.levelDb, mode.t60S))),
-    ...reading.unexplained.filter(peak => !peak.cause || peak.cause === RESONANT_CAUSE).map(peak => line(peak.frequencyHz, (peak.u95Hz ?? 2 * UNKNOWN_STANDARD_HZ) / 2, peak.levelDb, peak.t60S)),
+    ...reading.unexplained.filter(peak => !peak.cause || NOT_OF_THE_ROOM.test(peak.cause)).map(peak => line(peak.frequencyHz, (peak.u95Hz ?? 2 * UNKNOWN_STANDARD_HZ) / 2, peak.levelDb, peak.t60S)),
   ].sort((a, b) => a.frequencyHz - b.frequencyHz)
   const highest = Math.max(...lines.map(l => l.frequencyHz))
   return { lines, fromHz: 20, toHz: 1.3 * highest, detection: { stepHz: highest, levelDb: [FLOOR_DB, FLOOR_DB] }, explainedShare: 1 }
 }
 
-/** As matchingReport names it. */
-const RESONANT_CAUSE = 'the other head'
+/** Causes, as matchingCauses names them, that are the drum itself. */
+const NOT_OF_THE_ROOM = /head$|^the air|^the other half/
 
 /** Tensions of batter and resonant head to start from, N/m: each reading's own word, and its runner-up's. */
 function starts(batter: TappedReading[], resonant: TappedReading[]): Array<[number, number]> {
@@ -101,7 +101,7 @@ function bothReading(ears: Ear[], fits: BothFit[]): BothHeadsReading {
   const head = (column: 0 | 1, lnTension: number): HeadTension => {
     const variance = best.covariance[column * best.size + column]!
     const gains = gainsOn(column, best.rows, best.covariance)
-    const noise = Math.sqrt(best.rows.reduce((sum, row, i) => sum + (row.source.kind === 'mode' ? (gains[i]! * row.source.noise) ** 2 : 0), 0))
+    const noise = Math.sqrt(best.rows.reduce((sum, row, i) => sum + (row.source.kind === 'mode' ? (gains[i]! * Math.hypot(row.source.noise, row.source.uneven)) ** 2 : 0), 0))
     const nPerM = Math.exp(lnTension)
     return { nPerM, u95NPerM: studentT95(30) * Math.sqrt(variance) * Math.max(1, scatter) * nPerM, repeatabilityU95NPerM: studentT95(30) * Math.hypot(noise, LEAST_REPEATABILITY) * nPerM }
   }

@@ -74,11 +74,11 @@ export function fitBoth(ears: Ear[], start: FitState): BothFit {
 }
 
 function equations(ears: Ear[], heard: Heard[], state: FitState, seenFrom: (ear: Ear, state: FitState) => FitState): FitRow[] {
-  const rows = ears.flatMap((ear, e) => heard[e]!.matched.map(({ mode, residual, noise, modelError, weight }): FitRow => {
+  const rows = ears.flatMap((ear, e) => heard[e]!.matched.map(({ mode, residual, noise, modelError, uneven, weight }): FitRow => {
     const at = seenFrom(ear, state)
     const gradient = modeGradient(ear.context, mode, Math.exp(at.lnTension), at.edge)
     return {
-      source: { kind: 'mode', noise, modelError },
+      source: { kind: 'mode', noise, modelError, uneven },
       gradient: ear.side === ears[0]!.side ? gradient : turnedGradient(gradient),
       residual,
       error: Math.hypot(noise, modelError) / Math.sqrt(Math.max(weight, 1e-4)),

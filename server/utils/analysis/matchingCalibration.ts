@@ -2,7 +2,7 @@ import type { HeadCalibration, MatchedMode, Measured } from '../../../shared/typ
 import type { ExplainRequest } from './explanation'
 import { matchingContext, type MatchingContext } from './matchingContext'
 import { CALIBRATED, UNKNOWN, UNKNOWNS, modeGradient, priorEquations } from './matchingNuisance'
-import { modeModelError } from './matchingPriors'
+import { modeModelError, unevenError } from './matchingPriors'
 import { moved, predictAt, stateFrom, unknownsOf, type FitState } from './tensionFit'
 import { solveWeighted, type FitRow } from './tensionSolve'
 
@@ -66,7 +66,7 @@ function modeRows(context: MatchingContext, modes: MatchedMode[], state: FitStat
     const shift = state.inputs.reduce((sum, value, i) => sum + gradient[UNKNOWN.density + i]! * value, 0)
     const residual = Math.log(undamped / twin.frequencyHz) - shift
     const z = residual / Math.hypot(noise, modelError, AIR_REACH * Math.abs(twin.sensitivity.lnAirScale) * (mode.m === 0 ? context.priors.airAxisymmetric : context.priors.airOthers), 0.005)
-    return Math.abs(z) > OUTLIER_Z ? [] : [{ source: { kind: 'mode', noise, modelError }, gradient, residual, error: Math.hypot(noise, modelError) }]
+    return Math.abs(z) > OUTLIER_Z ? [] : [{ source: { kind: 'mode', noise, modelError, uneven: unevenError(mode.m, mode.n, mode.splitHz !== undefined) }, gradient, residual, error: Math.hypot(noise, modelError) }]
   })
 }
 

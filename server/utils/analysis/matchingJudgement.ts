@@ -14,7 +14,7 @@ const DIFFERENT = 0.012
 /** Where the air is hardly known one naming spans as much tension as this share of the air's spread. */
 const LOOSE_AIR = 0.5
 /** Runner-up shown and reading doubtful when the odds are below these. */
-const SHOWN_ODDS = 200
+const SHOWN_ODDS = 20
 const DOUBTFUL_ODDS = 8
 /** A line with less weight than this is an outlier. */
 const TRUSTED = 0.3

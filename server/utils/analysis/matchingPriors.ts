@@ -56,16 +56,21 @@ export const RATIO_SPREAD = 0.5
 const HARMONIC_RATIO = 0.01
 
 /**
- * Relative standard error of one mode's frequency as the even model predicts it.
- *
- * An uneven head splits (m,n) by (4m - 1)/(2 (4m^2 - 1)) N_2m/N_0 and moves m = 0, n >= 4 and m = 2 at second order.
+ * What an uneven head adds to the relative standard error of one mode's frequency: a pair (m,n) splits by
+ * (4m - 1)/(2 (4m^2 - 1)) N_2m/N_0, and one line of it may be either; m = 2 and m = 0, n >= 4 move at second order.
  * @param asPair  both lines were heard: their mean is free of the split
  * Source: physics.md sections 4 and 7.
  */
-export function modeModelError(priors: ModelPriors, m: number, n: number, asPair: boolean): number {
-  if (m === 0) return Math.hypot(priors.axisymmetricError, n >= 4 ? 0.0015 : 0.0004 * n)
+export function unevenError(m: number, n: number, asPair: boolean): number {
+  if (m === 0) return n >= 4 ? 0.0015 : 0
   const split = asPair ? 0 : (4 * m - 1) / (2 * (4 * m * m - 1)) * HARMONIC_RATIO / 2 / Math.sqrt(m)
-  return Math.hypot(priors.othersError, split, m === 2 ? 0.0004 : 0, 0.0003 * (n - 1))
+  return Math.hypot(split, m === 2 ? 0.0004 : 0)
+}
+
+/** Relative standard error of one mode's frequency as the even model predicts it: the model's own, and what an uneven head adds. */
+export function modeModelError(priors: ModelPriors, m: number, n: number, asPair: boolean): number {
+  const own = m === 0 ? Math.hypot(priors.axisymmetricError, n >= 4 ? 0 : 0.0004 * n) : Math.hypot(priors.othersError, 0.0003 * (n - 1))
+  return Math.hypot(own, unevenError(m, n, asPair))
 }
 
 /** Standard uncertainties of what the maker states, relative unless said: tape on the diameter, data sheet of the film. */

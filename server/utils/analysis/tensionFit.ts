@@ -2,7 +2,7 @@ import type { PredictedMode } from '../../../shared/acoustics'
 import type { Candidate } from './hypotheses'
 import type { MatchingContext } from './matchingContext'
 import { UNKNOWN, modeGradient, priorEquations } from './matchingNuisance'
-import { modeModelError } from './matchingPriors'
+import { modeModelError, unevenError } from './matchingPriors'
 import type { ScoreInput, ScoredLine, ScoredMode } from './matchingInput'
 import { assignLines, scoreHypothesis } from './matchingScore'
 import { solveWeighted, type FitRow } from './tensionSolve'
@@ -16,6 +16,8 @@ export interface MatchedLines {
   /** Standard errors of ln f: of the measurement, of the model. */
   noise: number
   modelError: number
+  /** The part of modelError that an uneven head is to blame for. */
+  uneven: number
   /** 1 = fully trusted, 0 = an outlier. */
   weight: number
 }
@@ -102,14 +104,15 @@ export function matchedLines(context: MatchingContext, modes: PredictedMode[], i
     const modelError = mode.air ? context.priors.airResonanceError : modeModelError(context.priors, mode.m, mode.n, lines.length > 1)
     const residual = measured - Math.log(mode.frequencyHz)
     const z = residual / Math.hypot(noise, modelError)
-    return { mode, lines, residual, noise, modelError, weight: 1 / (1 + Math.exp(0.5 * (z * z - OUTLIER_Z * OUTLIER_Z))) }
+    const uneven = mode.air ? 0 : unevenError(mode.m, mode.n, lines.length > 1)
+    return { mode, lines, residual, noise, modelError, uneven, weight: 1 / (1 + Math.exp(0.5 * (z * z - OUTLIER_Z * OUTLIER_Z))) }
   })
 }
 
 /** Rows of the least squares: a matched mode each, then the priors. */
 export function fitRows(context: MatchingContext, matched: MatchedLines[], state: FitState): FitRow[] {
-  const rows: FitRow[] = matched.map(({ mode, residual, noise, modelError, weight }) => ({
-    source: { kind: 'mode', noise, modelError },
+  const rows: FitRow[] = matched.map(({ mode, residual, noise, modelError, uneven, weight }) => ({
+    source: { kind: 'mode', noise, modelError, uneven },
     gradient: modeGradient(context, mode, Math.exp(state.lnTension), state.edge),
     residual,
     error: Math.hypot(noise, modelError) / Math.sqrt(Math.max(weight, 1e-4)),

@@ -2,7 +2,7 @@ import type { PriorKind } from './matchingNuisance'
 
 /** One equation of the fit: gradient . step = residual, with its standard error. */
 export interface FitRow {
-  source: { kind: 'mode', noise: number, modelError: number } | { kind: PriorKind }
+  source: { kind: 'mode', noise: number, modelError: number, uneven: number } | { kind: PriorKind }
   gradient: number[]
   residual: number
   error: number

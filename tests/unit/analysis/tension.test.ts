@@ -6,7 +6,7 @@ import { solveWeighted } from '../../../server/utils/analysis/tensionSolve'
 import { findingsOf, requestOf, type LineCase } from './matching.support'
 
 describe('weighted least squares', () => {
-  const row = (gradient: number[], residual: number, error: number) => ({ source: { kind: 'mode' as const, noise: error, modelError: 0 }, gradient, residual, error })
+  const row = (gradient: number[], residual: number, error: number) => ({ source: { kind: 'mode' as const, noise: error, modelError: 0, uneven: 0 }, gradient, residual, error })
 
   it('fits a straight line as the textbook does', () => {
     // y = a + b x through (0, 1), (1, 3), (2, 4), equal errors: a = 7/6, b = 3/2; var(a) = 5/6, var(b) = 1/2 by hand from the normal equations.
