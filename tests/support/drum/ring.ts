@@ -31,9 +31,9 @@ type Weights = Map<number, Complex[]>
 
 /**
  * The microphone's weights for a mode. Mixed modes of an uneven head need all orders at once: those are kept on a grid
- * of frequencies 5 % apart, which touches how loud a line is heard and nothing else.
+ * of frequencies 5 % apart, and brought to the mode's own by the square of its frequency, as pressure goes.
  */
-function listenTo(model: DrumModel, microphone: SimMicrophone): (mode: MixedMode, groups: { m: number }[]) => { near: Weights, far?: Weights } {
+function listenTo(model: DrumModel, microphone: SimMicrophone): (mode: MixedMode, groups: { m: number }[]) => { near: Weights, far?: Weights, strength: number } {
   const { drum, films } = model
   const kept = new Map<number, { near: Weights, far?: Weights }>()
   const all = Array.from({ length: M_MAX + 1 }, (_, m) => m)
@@ -47,11 +47,11 @@ function listenTo(model: DrumModel, microphone: SimMicrophone): (mode: MixedMode
     }
   }
   return (mode, groups) => {
-    if (groups.length === 1) return make([groups[0]!.m], mode.omega)
+    if (groups.length === 1) return { ...make([groups[0]!.m], mode.omega), strength: 1 }
     const cell = Math.round(Math.log(mode.omega) / 0.05)
     const found = kept.get(cell) ?? make(all, Math.exp(cell * 0.05))
     kept.set(cell, found)
-    return found
+    return { ...found, strength: (mode.omega / Math.exp(cell * 0.05)) ** 2 }
   }
 }
 
@@ -76,7 +76,7 @@ export function soundingLines(model: DrumModel, modes: MixedMode[], strike: SimS
     let pressure = c(0)
     let atCentre = 0
     const groups = gatherShape(mode)
-    const { near, far } = hearing(mode, groups)
+    const { near, far, strength } = hearing(mode, groups)
     for (const { m, side, shape } of groups) {
       const struck = angularPart(m, side, strike.angleRad ?? 0)
       const heard = angularPart(m, side, microphone.angleRad ?? 0)
@@ -94,7 +94,7 @@ export function soundingLines(model: DrumModel, modes: MixedMode[], strike: SimS
     const omega = Math.sqrt(mode.omega ** 2 + mode.gamma ** 2 - gamma ** 2)
     const drive = push(tau, tau, c(gamma, omega))
     const driven = mul(force, scale(drive, strike.force ?? 1))
-    const amplitude = mul(mul(c(0, 1 / mode.omega), scale(force, strike.force ?? 1)), pressure)
+    const amplitude = mul(mul(c(0, strength / mode.omega), scale(force, strike.force ?? 1)), pressure)
     const heard = mul(amplitude, drive)
     return {
       mode, omega, gamma, amplitude,
