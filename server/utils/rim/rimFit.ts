@@ -1,4 +1,5 @@
 import { CholeskyDecomposition, Matrix } from 'ml-matrix'
+import { PER_TAP, type ParameterMap } from './parameters'
 import { RimModel, type RimProblem, type RimSpectra } from './rimModel'
 
 /** What is held to be likely of an unknown before the round is heard: mean and standard deviation. */
@@ -29,60 +30,61 @@ export interface RimFitOptions {
 /**
  * What stands between two taps' spectra and the model: noise, the model's own error, and the room. A room colours all taps
  * of a microphone that stays put alike: of each bin's taps together, the part that looks like what was heard there weighs less.
+ *
+ * The weighed product of two columns is then sum scale^2 a b - sum over bins of less (u.a)(u.b), u along what was heard.
  */
 class Weighing {
-  private readonly scale: Float64Array
-  private readonly along: Float64Array
-  private readonly kept: Float64Array
+  /** One factor a row. */
+  readonly scale: Float64Array
+  /** Unit vector of what was heard, by bin, over that bin's rows, after scaling. */
+  readonly along: Float64Array
+  /** 1 - 1 / (1 + what the room adds), by bin. */
+  readonly less: Float64Array
 
   constructor(private readonly problem: RimProblem, heard: RimSpectra, options: RimFitOptions) {
     const { map, bins, spectra, microphone } = problem
     const taps = map.tapCount
-    this.scale = new Float64Array(bins.length * taps)
+    this.scale = new Float64Array(2 * bins.length * taps)
     this.along = new Float64Array(2 * bins.length * taps)
-    this.kept = new Float64Array(bins.length)
+    this.less = new Float64Array(bins.length)
+    const own = options.modelError ** 2 + (microphone === 'following' ? options.roomShare ** 2 : 0)
     for (let b = 0; b < bins.length; b++) {
       let length = 0
       for (let i = 0; i < taps; i++) {
         const at = 2 * (b * taps + i)
         const power = heard[at]! ** 2 + heard[at + 1]! ** 2
-        const own = options.modelError ** 2 + (microphone === 'following' ? options.roomShare ** 2 : 0)
         const scale = Math.SQRT2 / Math.sqrt(spectra.noise + own * power)
-        this.scale[b * taps + i] = scale
+        this.scale[at] = this.scale[at + 1] = scale
         this.along[at] = heard[at]! * scale
         this.along[at + 1] = heard[at + 1]! * scale
         length += power * scale * scale
       }
       const room = microphone === 'fixed' ? options.roomShare ** 2 * length / 2 : 0
-      this.kept[b] = 1 / Math.sqrt(1 + room)
+      this.less[b] = room / (1 + room)
       const norm = Math.sqrt(Math.max(1e-300, length))
       for (let i = 0; i < 2 * taps; i++) this.along[2 * b * taps + i]! /= norm
     }
   }
 
-  /** Weighs a residual or a column of slopes, in place. */
-  apply(values: Float64Array): void {
+  /** Scales a residual or a column of slopes, in place, and gives its parts along what was heard: real, imaginary, by bin. */
+  scaled(values: Float64Array): Float64Array {
     const { map, bins } = this.problem
-    const taps = map.tapCount
+    const rows = 2 * map.tapCount
+    const parts = new Float64Array(2 * bins.length)
+    for (let r = 0; r < values.length; r++) values[r]! *= this.scale[r]!
     for (let b = 0; b < bins.length; b++) {
+      if (this.less[b] === 0) continue
       let re = 0
       let im = 0
-      for (let i = 0; i < taps; i++) {
-        const at = 2 * (b * taps + i)
-        const scale = this.scale[b * taps + i]!
-        values[at]! *= scale
-        values[at + 1]! *= scale
+      for (let at = b * rows; at < (b + 1) * rows; at += 2) {
         re += this.along[at]! * values[at]! + this.along[at + 1]! * values[at + 1]!
         im += this.along[at]! * values[at + 1]! - this.along[at + 1]! * values[at]!
       }
-      const less = 1 - this.kept[b]!
-      if (less < 1e-9 || (re === 0 && im === 0)) continue
-      for (let i = 0; i < taps; i++) {
-        const at = 2 * (b * taps + i)
-        values[at]! -= less * (re * this.along[at]! - im * this.along[at + 1]!)
-        values[at + 1]! -= less * (re * this.along[at + 1]! + im * this.along[at]!)
-      }
+      const root = Math.sqrt(this.less[b]!)
+      parts[2 * b] = root * re
+      parts[2 * b + 1] = root * im
     }
+    return parts
   }
 }
 
@@ -134,49 +136,50 @@ export function fitRim(problem: RimProblem, start: Float64Array, prior: RimPrior
 interface State { cost: number, dataCost: number, normal: Float64Array[], gradient: Float64Array }
 
 function linearised(model: RimModel, measured: RimSpectra, weighing: Weighing, x: Float64Array, prior: RimPrior, free: number[]): State {
-  const { predicted, columns } = model.linearise(x, c => free.includes(c))
+  const { map } = model.problem
+  const wanted = new Set(free)
+  const { predicted, columns } = model.linearise(x, c => wanted.has(c))
   const residual = measured.map((y, r) => y - predicted[r]!)
-  weighing.apply(residual)
+  const residualParts = weighing.scaled(residual)
+  const parts = free.map(c => weighing.scaled(columns[c]!))
   const normal = free.map(() => new Float64Array(free.length))
   const gradient = new Float64Array(free.length)
-  const spans = free.map((c) => {
-    weighing.apply(columns[c]!)
-    return spanOf(columns[c]!)
-  })
   for (let a = 0; a < free.length; a++) {
-    const first = columns[free[a]!]!
-    const [from, to] = spans[a]!
-    let sum = 0
-    for (let r = from; r < to; r++) sum += first[r]! * residual[r]!
-    gradient[a] = sum + (prior.mean[free[a]!]! - x[free[a]!]!) / prior.sd[free[a]!]! ** 2
+    const column = columns[free[a]!]!
+    const rows = rowsOf(free[a]!, map)
+    gradient[a] = dot(column, residual, rows) - dot(parts[a]!, residualParts, ALL) + (prior.mean[free[a]!]! - x[free[a]!]!) / prior.sd[free[a]!]! ** 2
     for (let b = 0; b <= a; b++) {
-      const second = columns[free[b]!]!
-      const start = Math.max(from, spans[b]![0])
-      const end = Math.min(to, spans[b]![1])
-      let dot = 0
-      for (let r = start; r < end; r++) dot += first[r]! * second[r]!
-      normal[a]![b] = normal[b]![a] = dot
+      const other = rowsOf(free[b]!, map)
+      const apart = rows.every > 2 && other.every > 2 && rows.from !== other.from
+      const product = (apart ? 0 : dot(column, columns[free[b]!]!, other.every > 2 ? other : rows)) - dot(parts[a]!, parts[b]!, ALL)
+      normal[a]![b] = normal[b]![a] = product
     }
     normal[a]![a]! += 1 / prior.sd[free[a]!]! ** 2
   }
-  const dataCost = 0.5 * squares(residual)
+  const dataCost = 0.5 * (dot(residual, residual, ALL) - dot(residualParts, residualParts, ALL))
   return { cost: dataCost + priorCostOf(x, prior), dataCost, normal, gradient }
 }
 
-/** First and past-the-last row of a column that are not zero. */
-function spanOf(column: Float64Array): [number, number] {
-  let from = 0
-  let to = column.length
-  while (from < to && column[from] === 0) from++
-  while (to > from && column[to - 1] === 0) to--
-  return [from, to]
+/** Pairs of rows, re and im: the first one, and how far the next is. */
+interface Rows { from: number, every: number }
+const ALL: Rows = { from: 0, every: 2 }
+
+/** A tap's own unknowns touch its own rows only. */
+function rowsOf(column: number, map: ParameterMap): Rows {
+  return column < map.taps ? ALL : { from: 2 * Math.floor((column - map.taps) / PER_TAP), every: 2 * map.tapCount }
+}
+
+function dot(a: Float64Array, b: Float64Array, { from, every }: Rows): number {
+  let sum = 0
+  for (let r = from; r < a.length; r += every) sum += a[r]! * b[r]! + a[r + 1]! * b[r + 1]!
+  return sum
 }
 
 function costAt(model: RimModel, measured: RimSpectra, weighing: Weighing, x: Float64Array, prior: RimPrior): number {
   const predicted = model.predict(x)
   const residual = measured.map((y, r) => y - predicted[r]!)
-  weighing.apply(residual)
-  const cost = 0.5 * squares(residual) + priorCostOf(x, prior)
+  const parts = weighing.scaled(residual)
+  const cost = 0.5 * (dot(residual, residual, ALL) - dot(parts, parts, ALL)) + priorCostOf(x, prior)
   return Number.isFinite(cost) ? cost : Infinity
 }
 
@@ -184,12 +187,6 @@ function priorCostOf(x: Float64Array, prior: RimPrior): number {
   let sum = 0
   for (let c = 0; c < x.length; c++) if (Number.isFinite(prior.sd[c]!)) sum += ((x[c]! - prior.mean[c]!) / prior.sd[c]!) ** 2
   return sum / 2
-}
-
-function squares(values: Float64Array): number {
-  let sum = 0
-  for (const v of values) sum += v * v
-  return sum
 }
 
 /** What a step would gain if the model were as straight as its slopes. */

@@ -34,7 +34,7 @@ export interface RimLine {
 }
 
 /** Below this a shape's part is counted, but not its slope. */
-const LEAST_MIX = 0.003
+const LEAST_MIX = 0.01
 
 /** The lines of all modes, each with what it is made of. */
 export function soundingLines(basis: RimBasis, map: ParameterMap, x: Float64Array, modes: RimModes): RimLine[] {
