@@ -42,6 +42,9 @@ export interface ScoredLine {
   levelDb: number
   /** Share of the amplitude of all decaying lines. */
   share: number
+  /** Place in the list of the line that may be its other half on an uneven head, -1 where there is none; and ln of their mean frequency. */
+  twin: number
+  pairLn: number
   /** How much the line counts in naming: a weaker companion of a louder line is as often its other half as a mode. */
   weight: number
 }
@@ -67,6 +70,9 @@ const WIDTH_DOUBT = 0.06
 /** A line within this of a louder one, ln f, is its companion: the other half of an uneven pair, a beat, a player's loop. */
 const COMPANION = 0.035
 const COMPANION_WEIGHT = 0.4
+const WIDE = 0.003
+/** Both halves of a pair are seldom farther apart in level than this, dB, when both are heard well. */
+const ALIKE_DB = 8
 const LOUD_WITHIN_DB = 20
 const BAND_STEP = 0.01
 const HIGHEST_HZ = 3000
@@ -81,11 +87,13 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
   const lines = decaying.map((line) => {
     const undamped = Math.hypot(line.frequencyHz, line.gammaPerS / (2 * Math.PI))
     const doubt = WIDTH_DOUBT * line.gammaPerS / (2 * Math.PI)
-    return { line, lnFrequency: Math.log(undamped), spread: Math.hypot(line.standardErrorHz, doubt) / undamped, levelDb: line.levelDb, share: amplitude(line) / total, weight: 1 }
+    return { line, lnFrequency: Math.log(undamped), spread: Math.hypot(line.standardErrorHz, doubt) / undamped, levelDb: line.levelDb, share: amplitude(line) / total, weight: 1, twin: -1, pairLn: 0 }
   }).sort((a, b) => b.levelDb - a.levelDb)
   lines.forEach((line, l) => {
     if (lines.some((louder, k) => k < l && Math.abs(louder.lnFrequency - line.lnFrequency) < COMPANION)) line.weight = COMPANION_WEIGHT
   })
+  // Where naming is by wide priors, either half of a pair lies within them, and what stands beside a line is more often a loop's trace.
+  if (context.priors.othersError < WIDE) findTwins(lines)
   const levels = new Map<string, Float64Array>()
   const levelsOf = (m: number, n: number, other: boolean, filmShare: number) => {
     const name = `${m},${n},${other},${filmShare.toPrecision(2)}`
@@ -112,6 +120,19 @@ export function scoreInput(context: MatchingContext, findings: LineFindings, req
         lnFrequency: 0, damping: 0, bandDb: 0, floorDb: 0, heardDb: -1e3, used: 0, firstLn: 0, firstDb: 0,
       }
     },
+  }
+}
+
+/** Twins: the loudest two lines that are near enough and like enough in level to be one uneven pair, each line in one pair at most. */
+function findTwins(lines: ScoredLine[]): void {
+  for (let l = 0; l < lines.length; l++) {
+    const line = lines[l]!
+    if (line.twin >= 0) continue
+    const k = lines.findIndex((other, i) => i > l && other.twin < 0 && other.levelDb > line.levelDb - ALIKE_DB && Math.abs(other.lnFrequency - line.lnFrequency) < COMPANION)
+    if (k < 0) continue
+    const pairLn = 0.5 * (line.lnFrequency + lines[k]!.lnFrequency)
+    Object.assign(line, { twin: k, pairLn })
+    Object.assign(lines[k]!, { twin: l, pairLn })
   }
 }
 

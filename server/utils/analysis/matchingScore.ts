@@ -19,6 +19,8 @@ const SECOND_LINE = 2.5
 const MOST_SPLIT = 0.032
 /** A line weaker than the first of a pair by more than this is more often a room's ripple or a player's loop than its other half, dB. */
 const MOST_UNLIKE_DB = 14
+/** While only one line of a pair was taken the fit has followed it, and the pair's mean stands off by up to this share of their distance. */
+export const PAIR_LEEWAY = 0.5
 /** How much a loud mode is preferred to a weak one that lies as near, nats per dB. */
 const LOUDER_PER_DB = 0.035
 /** Levels farther off than this many spreads count as this far: something else was at work. */
@@ -84,12 +86,17 @@ export function assignLines(modes: ScoredMode[], input: ScoreInput): Int16Array 
 
 /** What it costs to take a line for a mode, nats; infinite where it is too far or the mode has its lines. */
 function costOf(line: ScoredLine, mode: ScoredMode): number {
-  if (mode.used > 1 || (mode.used > 0 && mode.m === 0)) return Infinity
+  if (mode.used > 1 || (mode.used > 0 && (mode.m === 0 || mode.air))) return Infinity
   const variance = mode.spread * mode.spread + line.spread * line.spread
   const off = mode.used ? offAsPair(line, mode) : line.lnFrequency - mode.lnFrequency
-  const z2 = off * off / variance
-  if (z2 > FARTHEST * FARTHEST) return Infinity
-  return 0.5 * z2 + 0.5 * Math.log(variance) + (mode.used ? SECOND_LINE : 0) - LOUDER_PER_DB * mode.loudestDb
+  const single = 0.5 * off * off / variance + (mode.used ? SECOND_LINE : 0)
+  // A line that stands well off with its like on the other side is half of a pair whose middle is the mode.
+  const asPair = mode.used || line.twin < 0 || mode.m === 0 || mode.air || Math.abs(line.lnFrequency - line.pairLn) > 0.5 * MOST_SPLIT / mode.m
+    ? Infinity
+    : 0.5 * (line.pairLn - mode.lnFrequency) ** 2 / variance + SECOND_LINE
+  const cost = Math.min(single, asPair)
+  if (cost > 0.5 * FARTHEST * FARTHEST + (mode.used || asPair < single ? SECOND_LINE : 0)) return Infinity
+  return cost + 0.5 * Math.log(variance) - LOUDER_PER_DB * mode.loudestDb
 }
 
 /** How far the mean of the two lines of a pair lies from its mode, ln; infinite where no head is as uneven as their distance. */
@@ -171,7 +178,8 @@ export function lineEvidence(modes: ScoredMode[], input: ScoreInput, assignment:
     const mode = modes[k]!
     // Lines come loudest first: the second line of a pair says nothing more about the level.
     if (mode.heardDb === SILENT) {
-      common += line.weight * frequencyEvidence(line, mode)
+      const lnFrequency = line.twin >= 0 && assignment[line.twin] === k ? line.pairLn : line.lnFrequency
+      common += line.weight * frequencyEvidence(line, lnFrequency, mode)
       mode.heardDb = line.levelDb
     } else {
       common -= line.weight * SECOND_LINE
@@ -219,9 +227,9 @@ function levelsEvidence(modes: ScoredMode[], { places }: ScoreInput): number {
   return best + Math.log(sum)
 }
 
-function frequencyEvidence(line: ScoredLine, mode: ScoredMode): number {
+function frequencyEvidence(line: ScoredLine, lnFrequency: number, mode: ScoredMode): number {
   const spread = Math.sqrt(mode.spread * mode.spread + line.spread * line.spread)
-  const z = (line.lnFrequency - mode.lnFrequency) / spread
+  const z = (lnFrequency - mode.lnFrequency) / spread
   return -0.5 * z * z - Math.log(spread * 2.5066 * STRAY_DENSITY) + dampingEvidence(line.line.gammaPerS, mode.damping)
 }
 

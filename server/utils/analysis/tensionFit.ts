@@ -4,7 +4,7 @@ import type { MatchingContext } from './matchingContext'
 import { UNKNOWN, modeGradient, priorEquations } from './matchingNuisance'
 import { modeModelError, unevenError } from './matchingPriors'
 import type { ScoreInput, ScoredLine, ScoredMode } from './matchingInput'
-import { assignLines, scoreHypothesis } from './matchingScore'
+import { assignLines, PAIR_LEEWAY, scoreHypothesis } from './matchingScore'
 import { solveWeighted, type FitRow } from './tensionSolve'
 
 /** A mode and the line or pair of lines taken for it. */
@@ -91,7 +91,7 @@ export function scoredModes(context: MatchingContext, modes: PredictedMode[], in
 }
 
 /** The modes that lines were assigned to, with their lines, residuals (ln) and weights. */
-export function matchedLines(context: MatchingContext, modes: PredictedMode[], input: ScoreInput, assignment: Int16Array): MatchedLines[] {
+export function matchedLines(context: MatchingContext, modes: PredictedMode[], input: ScoreInput, assignment: Int16Array, widen = LEAST_WIDEN): MatchedLines[] {
   const groups = new Map<number, ScoredLine[]>()
   input.lines.forEach((line, l) => {
     const k = assignment[l]!
@@ -103,7 +103,8 @@ export function matchedLines(context: MatchingContext, modes: PredictedMode[], i
     const noise = Math.sqrt(lines.reduce((sum, line) => sum + line.spread ** 2, 0)) / lines.length
     const modelError = mode.air ? context.priors.airResonanceError : modeModelError(context.priors, mode.m, mode.n, lines.length > 1)
     const residual = measured - Math.log(mode.frequencyHz)
-    const z = residual / Math.hypot(noise, modelError)
+    const apart = lines.length > 1 && lines[0]!.twin >= 0 && lines[0]!.pairLn === lines[1]!.pairLn ? Math.abs(lines[0]!.lnFrequency - lines[1]!.lnFrequency) : 0
+    const z = residual / Math.hypot(noise, modelError, widen * PAIR_LEEWAY * apart)
     const uneven = mode.air ? 0 : unevenError(mode.m, mode.n, lines.length > 1)
     return { mode, lines, residual, noise, modelError, uneven, weight: 1 / (1 + Math.exp(0.5 * (z * z - OUTLIER_Z * OUTLIER_Z))) }
   })
@@ -157,7 +158,7 @@ export function fitTension(context: MatchingContext, input: ScoreInput, start: F
     modes = movedModes(predicted, gradients, stated, origin)
     for (let round = 0; round < effort.rounds; round++) {
       const scored = scoredModes(context, modes, input, widen)
-      const matched = matchedLines(context, modes, input, assignLines(scored, input))
+      const matched = matchedLines(context, modes, input, assignLines(scored, input), widen)
       if (matched.length === 0) break
       const { step } = solveWeighted(fitRows(context, matched, state))
       state = moved(context, state, step)
