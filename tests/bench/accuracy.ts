@@ -106,7 +106,8 @@ for (const construction of CONSTRUCTIONS) {
 print('all', all)
 
 console.log('confidence, stated: share within 10 % of the truth (doubtful ones included)')
-for (const [low, high] of [[0, 0.5], [0.5, 0.8], [0.8, 0.95], [0.95, 1.01]] as const) {
+for (const [low, high] of [[0, 0.3], [0.3, 0.5], [0.5, 0.7], [0.7, 0.8], [0.8, 0.9], [0.9, 0.95], [0.95, 0.98], [0.98, 1.01]] as const) {
   const part = all.filter(({ judged }) => judged.reading && judged.reading.confidence >= low && judged.reading.confidence < high)
-  if (part.length > 0) console.log(`  ${low} to ${Math.min(1, high)}: ${percent(part.filter(({ judged }) => Math.abs(judged.tensionError!) <= 0.1).length / part.length, 0)} of ${part.length}`)
+  const mean = part.reduce((sum, { judged }) => sum + judged.reading!.confidence, 0) / part.length
+  if (part.length > 0) console.log(`  ${low} to ${Math.min(1, high)} (mean ${percent(mean, 0)}): ${percent(part.filter(({ judged }) => Math.abs(judged.tensionError!) <= 0.1).length / part.length, 0)} of ${part.length}`)
 }

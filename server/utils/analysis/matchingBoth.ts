@@ -46,7 +46,8 @@ export function readBothHeads(instrument: AnalysedInstrument, taps: TappedReadin
   const resonantTaps = taps.filter(tap => tap.side === 'resonant')
   if (instrument.construction !== 'double-headed' || instrument.heads.length < 2) throw new RangeError('only a drum with two heads can be read from both')
   if (batterTaps.length === 0 || resonantTaps.length === 0) throw new RangeError('a tap on each head is needed')
-  const ears = taps.map(tap => earOf(instrument, tap))
+  // The first ear sets which head the fit calls its own.
+  const ears = [...batterTaps, ...resonantTaps].map(tap => earOf(instrument, tap))
   const fits = starts(batterTaps, resonantTaps).map(([batter, resonant]) => fitBoth(ears, stateFrom(ears[0]!.context, Math.log(batter), Math.log(resonant))))
   fits.sort((a, b) => b.score - a.score)
   return bothReading(ears, fits)
@@ -105,14 +106,11 @@ function bothReading(ears: Ear[], fits: BothFit[]): BothHeadsReading {
     const nPerM = Math.exp(lnTension)
     return { nPerM, u95NPerM: studentT95(30) * Math.sqrt(variance) * Math.max(1, scatter) * nPerM, repeatabilityU95NPerM: studentT95(30) * Math.hypot(noise, LEAST_REPEATABILITY) * nPerM }
   }
-  const swapped = ears[0]!.side === 'resonant'
-  const own = head(0, best.state.lnTension)
-  const other = head(1, best.state.lnOther)
   const modes = ears.flatMap((ear, e) => matchedModes(best.heard[e]!.matched).map(mode => ({ ...mode, tapped: ear.side, side: sideOf(mode, ear.side) })))
   return {
     analysisVersion: ANALYSIS_VERSION,
-    batter: swapped ? other : own,
-    resonant: swapped ? own : other,
+    batter: head(0, best.state.lnTension),
+    resonant: head(1, best.state.lnOther),
     correlation: best.covariance[1]! / Math.sqrt(best.covariance[0]! * best.covariance[best.size + 1]!),
     pair: { inPhase: pairTone(best, modes, 'in-phase'), against: pairTone(best, modes, 'against') },
     modes: modes.sort((a, b) => a.measuredHz - b.measuredHz),
