@@ -67,7 +67,8 @@ describe('real kettledrum notes', () => {
   })
 
   it('are never read surely with another tone than the principal one as (1,1)', () => {
-    const silent = NOTES.flatMap(note => FILMS_UM.filter((_, film) => !read.get(note)![film]!.doubtful && !(Math.abs(centsOff(read.get(note)![film]!, note)) < 80)) // the loops' side tones stand up to 60 cents off; the next mode 600.map(um => `${note} at ${um} um`))
+    // The loops' side tones stand up to 60 cents off the principal tone; the next mode 600.
+    const silent = NOTES.flatMap(note => FILMS_UM.filter((_, film) => !read.get(note)![film]!.doubtful && !(Math.abs(centsOff(read.get(note)![film]!, note)) < 80)).map(um => `${note} at ${um} um`))
     expect(silent).toEqual([])
   })
 
