@@ -89,6 +89,8 @@ export interface AnalysedReading {
   budget: BudgetLine[]
   /** Double-headed drums only. */
   twoHeads?: TwoHeads
+  /** How far a loud stroke raised the pitch where listening began, as a share of the pitch at rest; absent where it did not. */
+  glide?: { share: number, standardError: number }
   /** The next best explanation, when it is within 20 to 1. */
   runnerUp: null | { tensionNPerM: number, fundamentalHz: number, odds: number }
   warnings: ReadingWarning[]

@@ -43,7 +43,7 @@ export interface ReadingRecord {
 }
 
 export function toReadingView({ reading, recording, head, instrument, makerName, others, calibration, togetherId }: ReadingRecord, user: Pick<SignedInUser, 'role'>): ReadingView {
-  const { analysisVersion, tension, fundamentalHz, confidence, doubtful, modes, taps, rim, warnings, unexplained, budget, runnerUp, twoHeads } = reading.detail as AnalysedReading
+  const { analysisVersion, tension, fundamentalHz, confidence, doubtful, modes, taps, rim, warnings, unexplained, budget, runnerUp, twoHeads, glide } = reading.detail as AnalysedReading
   const stress = filmStress(toAnalysedHead(head), tension.nPerM)
   return {
     id: reading.id,
@@ -51,7 +51,7 @@ export function toReadingView({ reading, recording, head, instrument, makerName,
     instrumentId: reading.instrument_id,
     takenAt: reading.taken_at.toISOString(),
     strike: reading.strike,
-    tension, fundamentalHz, confidence, doubtful, modes, taps, rim, warnings, unexplained, budget, runnerUp, twoHeads, analysisVersion,
+    tension, fundamentalHz, confidence, doubtful, modes, taps, rim, warnings, unexplained, budget, runnerUp, twoHeads, glide, analysisVersion,
     filmStress: reading.taken_at < head.film_since ? null : { mPa: stress.stressPa / 1e6, shareOfYield: stress.shareOfYield },
     makerName,
     readAt: reading.created_at.toISOString(),
