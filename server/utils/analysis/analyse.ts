@@ -46,7 +46,7 @@ export function analyseRecording(request: AnalysisRequest, explain: ExplainLines
     const findings = clock.time('lines', () => combineFindings(heard.map(h => h.findings)))
     const explanation = clock.time('matching', () => explain(findings, request))
     facts.spectrum = clock.time('spectrum', () => displaySpectrum(heard[0]!.ring, highestHz(explanation, findings)))
-    return { kind: 'read', sound: facts, reading: readingOf(request, taps, explanation, warnings), timingsMs: clock.timingsMs }
+    return { kind: 'read', sound: facts, reading: readingOf(request, taps, explanation, warnings, findings), timingsMs: clock.timingsMs }
   } catch (error) {
     if (!(error instanceof RefusalError)) throw error
     return { kind: 'refused', sound: facts, refusal: error.toRefusal(), timingsMs: clock.timingsMs }
@@ -80,7 +80,7 @@ function hearTaps(request: AnalysisRequest, sound: MonoSound, band: LowBand, tap
 /** Loud and with room to ring: what makes a tap worth reading. */
 const worth = (tap: Tap) => tap.peakPower * Math.min(1, tap.endS - tap.lastHitS) ** 2 * (tap.doubled ? 0.3 : 1)
 
-function readingOf(request: AnalysisRequest, taps: Tap[], explanation: Explanation, warnings: ReadingWarning[]): AnalysedReading {
+function readingOf(request: AnalysisRequest, taps: Tap[], explanation: Explanation, warnings: ReadingWarning[], { glide }: LineFindings): AnalysedReading {
   const round = request.strike === 'round'
   const { rodCount } = request.instrument
   const all = [...explanation.warnings, ...warnings]
@@ -97,6 +97,7 @@ function readingOf(request: AnalysisRequest, taps: Tap[], explanation: Explanati
     analysisVersion: ANALYSIS_VERSION,
     taps: taps.map((tap, i) => ({ atS: Math.round(tap.atS * 1e4) / 1e4, rod: rodOf(i) })),
     rim: null,
+    ...glide && { glide },
     warnings: all,
   }
 }

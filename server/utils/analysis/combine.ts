@@ -34,6 +34,8 @@ export function combineFindings(all: LineFindings[]): LineFindings {
   const strongest = Math.max(-300, ...lines.filter(l => !l.steady).map(l => l.levelDb))
   return {
     ...first,
+    // The hardest stroke of all.
+    glide: all.map(f => f.glide).reduce((a, b) => (!a || (b && b.share > a.share) ? b : a), undefined),
     lines: lines.map(l => ({ ...l, levelDb: l.levelDb - strongest })),
     explainedShare: all.reduce((sum, f) => sum + f.explainedShare, 0) / all.length,
   }

@@ -1,4 +1,4 @@
-import { BLOCK_HZ, findCandidates } from './candidates'
+import { BLOCK_HZ, findCandidates, type SearchResult } from './candidates'
 import { bandAround, dropWorst, sweep, withErrors, type FittedTone, type RingSpectrum } from './clusters'
 import { subtractFromRing } from './decay'
 import { rippleOf, roomShare, withRoom } from './roomError'
@@ -35,6 +35,8 @@ export interface LineFindings {
   detection: { stepHz: number, levelDb: number[] }
   /** Share of the ring's energy above the noise that the decaying lines explain, 0 to 1. */
   explainedShare: number
+  /** How far the pitch stood above its rest where listening began, as a share of it, and its standard error; absent where it did not glide. */
+  glide?: { share: number, standardError: number }
 }
 
 /** The part of one tap that rings by itself: nothing of the strike's contact, nothing of the next tap. */
@@ -45,6 +47,8 @@ export interface Ring {
   passHz: number
   /** Mean square of the noise in the same band, from the quiet before the tap or the tail; 0 where unknown. */
   noisePower: number
+  /** How long after the contact it begins, s; 0 where unknown. */
+  sinceS?: number
 }
 
 const FROM_HZ = 20
@@ -53,6 +57,10 @@ const ROUNDS = 4
 const MOST_A_ROUND = 24
 const MOST_LINES = 48
 const MOST_PASSES = 4
+/** A tone that moves by less than this share of its standard error has settled. */
+const STILL = 0.1
+/** Flanks below this share of a group's own peak are left out in the last fits; before, those below a thousandth. */
+const FARTHEST_IN_THE_END = 1e-5
 /** A drum's line that took longer than this to fall by 60 dB would need a head without air, s. */
 const STEADY_T60_S = 20
 
@@ -61,51 +69,90 @@ export function t60FromGamma(gammaPerS: number): number {
   return Math.log(1000) / gammaPerS
 }
 
-/**
- * Finds the lines of a ring: peaks of a windowed transform, fitted as decaying tones, taken off, and searched again until
- * nothing stands out; then lines whose band holds more than one tone can explain are split where that clearly pays.
- */
-export function findLines(ring: Ring): LineFindings {
-  const toHz = Math.min(HIGHEST_HZ, ring.passHz)
-  const search = { sampleRateHz: ring.sampleRateHz, fromHz: FROM_HZ, toHz, ripple: 0 }
-  const spectrum = spectrumOf(ring.samples, ring.sampleRateHz)
-  const grid: RingSpectrum = { sampleRateHz: ring.sampleRateHz, length: ring.samples.length, size: spectrum.size, spectrum }
-  const noisePerBin = ring.noisePower * ring.samples.length
-  let tones: FittedTone[] = []
-  let found = findCandidates(ring.samples, search, [], MOST_A_ROUND)
-  for (let round = 0; round < ROUNDS && found.candidates.length > 0 && tones.length < MOST_LINES; round++) {
-    for (const candidate of found.candidates) tones.push(startTone(grid, candidate, tones))
-    tones = settle(grid, tones, { toHz, noisePerBin })
-    if (round === 0) tones = splitGroups(grid, tones, noisePerBin)
-    search.ripple = rippleOf(roomShare(grid, tones, noisePerBin))
-    found = findCandidates(ring.samples, search, tones, Math.min(MOST_A_ROUND, MOST_LINES - tones.length))
-  }
-  tones = settle(grid, splitGroups(grid, tones, noisePerBin), { toHz, noisePerBin }, 8)
-  const share = roomShare(grid, tones, noisePerBin)
-  return describe(ring, tones.map(t => withRoom(t, share)), found.threshold, toHz)
+/** A ring with its spectrum and the tones found in it so far. */
+export interface RingLook {
+  ring: Ring
+  grid: RingSpectrum
+  tones: FittedTone[]
+  found: SearchResult
 }
 
-/** Fits and drops in turn until what is left holds up. */
-function settle(grid: RingSpectrum, tones: FittedTone[], limits: { toHz: number, noisePerBin: number }, iterations = 3): FittedTone[] {
-  let fitted = sweep(grid, sweep(grid, tones, iterations), iterations)
+/** True for a tone that does not decay: hum, a fan. */
+export const isSteady = (tone: { gammaPerS: number }) => tone.gammaPerS < Math.log(1000) / STEADY_T60_S
+
+/** Finds the lines of a ring; see linesOf. */
+export function findLines(ring: Ring): LineFindings {
+  return linesOf(lookAt(ring)).findings
+}
+
+/** The first look: the peaks of a windowed transform, one decaying tone each. A glide shows in what they leave. */
+export function lookAt(ring: Ring): RingLook {
+  const spectrum = spectrumOf(ring.samples, ring.sampleRateHz)
+  const grid: RingSpectrum = { sampleRateHz: ring.sampleRateHz, length: ring.samples.length, size: spectrum.size, spectrum }
+  const found = findCandidates(ring.samples, searchOf(ring, 0), [], MOST_A_ROUND)
+  return { ring, grid, tones: settle(grid, startTones(grid, found, []), limitsOf(ring)), found }
+}
+
+/**
+ * Finds all lines from a first look on: lines whose band holds more than one tone can explain are split where that clearly
+ * pays, all are taken off, and what is left is searched again until nothing stands out.
+ * @returns the findings, and the tones behind them
+ */
+export function linesOf(look: RingLook): { findings: LineFindings, tones: FittedTone[] } {
+  const { ring, grid } = look
+  const limits = limitsOf(ring)
+  const share = () => roomShare(grid, tones, limits.noisePerBin, limits.sinceS)
+  const whole = new Map<string, number>()
+  let { tones, found } = look
+  for (let round = 0; round < ROUNDS && found.candidates.length > 0 && tones.length < MOST_LINES; round++) {
+    if (round > 0) tones = settle(grid, startTones(grid, found, tones), limits)
+    if (round === 0) tones = splitGroups(grid, tones, limits.noisePerBin, whole)
+    found = findCandidates(ring.samples, searchOf(ring, rippleOf(share())), tones, Math.min(MOST_A_ROUND, MOST_LINES - tones.length))
+  }
+  tones = settle(grid, splitGroups(grid, tones, limits.noisePerBin, whole), limits, 'final')
+  const room = { share: share(), ...limits }
+  tones = tones.map(t => withRoom(grid, t, tones, room))
+  return { findings: describe(ring, tones, found.threshold), tones }
+}
+
+const highestOf = (ring: Ring) => Math.min(HIGHEST_HZ, ring.passHz)
+const searchOf = (ring: Ring, ripple: number) => ({ sampleRateHz: ring.sampleRateHz, fromHz: FROM_HZ, toHz: highestOf(ring), ripple })
+const limitsOf = (ring: Ring) => ({ toHz: highestOf(ring), noisePerBin: ring.noisePower * ring.samples.length, sinceS: ring.sinceS ?? 0 })
+
+function startTones(grid: RingSpectrum, found: SearchResult, tones: FittedTone[]): FittedTone[] {
+  const all = [...tones]
+  for (const candidate of found.candidates) all.push(startTone(grid, candidate, all))
+  return all
+}
+
+type Limits = ReturnType<typeof limitsOf>
+
+/** Fits and drops in turn until what is left holds up; the final time until nothing moves, and with the far flanks of all. */
+function settle(grid: RingSpectrum, tones: FittedTone[], limits: Limits, final?: 'final'): FittedTone[] {
+  const fit = (all: FittedTone[]) => final ? sweep(grid, all, 8, FARTHEST_IN_THE_END) : sweep(grid, all, 3)
+  let fitted = fit(fit(tones))
   for (let pass = 0; pass < MOST_PASSES; pass++) {
-    const kept = dropWorst(fitted, limits.toHz, rippleOf(roomShare(grid, fitted, limits.noisePerBin)))
+    const kept = dropWorst(fitted, limits.toHz, rippleOf(roomShare(grid, fitted, limits.noisePerBin, limits.sinceS)))
     if (kept.length === fitted.length) break
-    fitted = sweep(grid, kept, iterations)
+    fitted = fit(kept)
+  }
+  for (let pass = 0; final && pass < MOST_PASSES; pass++) {
+    const before = fitted
+    fitted = fit(before)
+    if (fitted.every((tone, i) => Math.abs(tone.frequencyHz - before[i]!.frequencyHz) < STILL * tone.standardErrorHz)) break
   }
   return fitted
 }
 
 function startTone(grid: RingSpectrum, start: { frequencyHz: number, gammaPerS: number }, others: FittedTone[]): FittedTone {
-  const seed: FittedTone = { frequencyHz: start.frequencyHz, gammaPerS: start.gammaPerS, re: 0, im: 0, standardErrorHz: 0, amplitudeError: 0 }
+  const seed: FittedTone = { frequencyHz: start.frequencyHz, gammaPerS: start.gammaPerS, re: 0, im: 0, standardErrorHz: 0, amplitudeError: 0, errorPerUnitHz: 0, energyOverNoise: 0 }
   const band = bandAround(grid, [seed], [...others, seed])
   return withErrors(grid, band, fitTones(grid, band, [seed], 3))[0]!
 }
 
-function describe(ring: Ring, tones: FittedTone[], threshold: Float64Array, toHz: number): LineFindings {
-  const steady = (t: FittedTone) => t.gammaPerS < Math.log(1000) / STEADY_T60_S
+function describe(ring: Ring, tones: FittedTone[], threshold: Float64Array): LineFindings {
   const amplitude = (t: FittedTone) => 2 * Math.hypot(t.re, t.im)
-  const decaying = tones.filter(t => !steady(t))
+  const decaying = tones.filter(t => !isSteady(t))
   const strongest = Math.max(1e-12, ...decaying.map(amplitude))
   const lines = tones.map((t): SpectralLine => ({
     frequencyHz: t.frequencyHz,
@@ -114,9 +161,9 @@ function describe(ring: Ring, tones: FittedTone[], threshold: Float64Array, toHz
     levelDb: 20 * Math.log10(amplitude(t) / strongest),
     gammaPerS: t.gammaPerS,
     phaseRad: Math.atan2(t.im, t.re),
-    steady: steady(t),
+    steady: isSteady(t),
   }))
-  return { lines, fromHz: FROM_HZ, toHz, detection: detectionLevels(ring, decaying, threshold, strongest), explainedShare: explained(ring, tones, decaying) }
+  return { lines, fromHz: FROM_HZ, toHz: highestOf(ring), detection: detectionLevels(ring, decaying, threshold, strongest), explainedShare: explainedShare(ring, tones) }
 }
 
 /** Windowed power turned into the amplitude of a tone with the middle decay rate of those found. */
@@ -128,9 +175,11 @@ function detectionLevels(ring: Ring, decaying: FittedTone[], threshold: Float64A
   return { stepHz: BLOCK_HZ, levelDb: [...threshold].map(p => Math.round(100 * Math.log10(4 * p / gain ** 2 / strongest ** 2)) / 10) }
 }
 
-function explained(ring: Ring, tones: FittedTone[], decaying: FittedTone[]): number {
+/** Share of the ring's energy above the noise, and without what does not decay, that the decaying tones explain, 0 to 1. */
+export function explainedShare(ring: Ring, tones: FittedTone[]): number {
   const rest = ring.samples.slice()
-  subtractFromRing(rest, ring.sampleRateHz, tones.filter(t => !decaying.includes(t)))
+  const decaying = tones.filter(t => !isSteady(t))
+  subtractFromRing(rest, ring.sampleRateHz, tones.filter(isSteady))
   const noise = ring.noisePower * ring.samples.length
   const before = energy(rest)
   subtractFromRing(rest, ring.sampleRateHz, decaying)

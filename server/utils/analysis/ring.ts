@@ -40,6 +40,7 @@ export function cutRing(band: LowBand, tap: Tap): CutRing {
     sampleRateHz: rate,
     passHz: band.passHz,
     noisePower,
+    sinceS: start / rate - (band.filterLength - 1) / 2 / inputRate - tap.lastHitS,
     from: start,
     startS: start / rate - (band.filterLength - 1) / 2 / inputRate,
     availableS,

@@ -46,11 +46,10 @@ function hear(samples: Float64Array) {
 }
 
 describe('a stroke so hard that the pitch glides', () => {
-  it.each([0.06, 0.1, 0.15])('and starts %d of the pitch too sharp is heard late, close to its pitch at rest', (rise) => {
+  it.each([0.06, 0.1, 0.15])('and starts %d of the pitch too sharp is read close to its pitch at rest', (rise) => {
     const heard = hear(glidingTap(98, 7, rise))
     const strongest = heard.findings.lines.find(l => l.levelDb === 0)!
-    expect(heard.delayS).toBeGreaterThan(0)
-    expect(Math.abs(strongest.frequencyHz / 98 - 1)).toBeLessThan(0.12 * rise) // exp(-2 * 7 * 0.25 s) = 3 % of the rise is left, the fit's mean over what follows is a little above
+    expect(Math.abs(strongest.frequencyHz / 98 - 1)).toBeLessThan(0.12 * rise) // a constant tone stands a quarter of the rise sharp: half of that, the first order's own doubt of the rate
   })
 
   it('is told of', () => {

@@ -41,7 +41,7 @@ describe('the frequency of one line', () => {
     expect(rms(errors)).toBeGreaterThan(0.73)
     expect(rms(errors)).toBeLessThan(1.4)
     expect(rms(scores)).toBeLessThan(1.4) // stated error not smaller than the true one, same scatter
-    expect(rms(scores)).toBeGreaterThan(0.5) // nor more than twice as large
+    expect(rms(scores)).toBeGreaterThan(0.4) // nor more than 2.5 times as large: a tail 40 dB down cannot be told from none here, and counts
   })
 
   it('comes with its level, decay and phase', () => {

@@ -1,8 +1,7 @@
 /**
  * Real toms whose tension nobody knows: the General MIDI set of fluid-soundfont-gm and the soft and hard strokes of
  * sonic-pi-samples (CC0). Their size is a guess, so what is asked is that a reading is never confidently wrong: the
- * lowest strong line of a tom struck at its centre is its lowest (0,1), measured outside this project with an
- * interpolated FFT, and a reading that puts the fundamental elsewhere must be marked doubtful or be refused.
+ * lowest strong line of a tom struck at its centre is its lowest (0,1), measured outside this project near its rest, and a reading that puts the fundamental elsewhere must be marked doubtful or be refused.
  */
 import { beforeAll, describe, expect, it } from 'vitest'
 import { analyseRecording } from '../../../server/utils/analysis/analyse'
@@ -24,20 +23,32 @@ function read(wav: Uint8Array, instrument: AnalysedInstrument): AnalysisOutcome 
   return analyseRecording({ wav, instrument, side: 'batter', strike: 'centre', firstRod: 1, centreDamped: false, temperatureC: 20 })
 }
 
-/** The lowest strong line late in the ring, Hz, by numpy's FFT of 0.6 s (General MIDI) or 0.3 s (sonic-pi) under a Hann window. */
+const kept = new Map<string, AnalysisOutcome>()
+
+function readOnce(name: string, wav: () => Uint8Array, instrument: AnalysedInstrument): AnalysisOutcome {
+  const found = kept.get(name) ?? read(wav(), instrument)
+  kept.set(name, found)
+  return found
+}
+
+/**
+ * The lowest strong line near rest, Hz: slope of the phase of the band-passed analytic signal (scipy butter and hilbert)
+ * over 30 ms, where the line has sunk by 20 to 30 dB. All of these strokes glide: the same line stands 15 to 25 % higher
+ * 20 ms after the strike, and the General MIDI ones may still fall by another per cent.
+ */
 const TOMS = [
-  { name: 'General MIDI note 41', wav: () => renderNote(DRUM_CHANNEL, 0, 41), lowestHz: 52.0, size: [18, 16] },
-  { name: 'General MIDI note 43', wav: () => renderNote(DRUM_CHANNEL, 0, 43), lowestHz: 75.8, size: [16, 16] },
-  { name: 'General MIDI note 45', wav: () => renderNote(DRUM_CHANNEL, 0, 45), lowestHz: 77.3, size: [14, 12] },
-  { name: 'General MIDI note 47', wav: () => renderNote(DRUM_CHANNEL, 0, 47), lowestHz: 95.9, size: [13, 10] },
-  { name: 'General MIDI note 48', wav: () => renderNote(DRUM_CHANNEL, 0, 48), lowestHz: 101.8, size: [12, 9] },
-  { name: 'General MIDI note 50', wav: () => renderNote(DRUM_CHANNEL, 0, 50), lowestHz: 112.8, size: [10, 8] },
-  { name: 'low tom, soft', wav: () => sonicPiSample('drum_tom_lo_soft'), lowestHz: 93.2, size: [14, 12] },
-  { name: 'low tom, hard', wav: () => sonicPiSample('drum_tom_lo_hard'), lowestHz: 94.4, size: [14, 12] },
-  { name: 'middle tom, soft', wav: () => sonicPiSample('drum_tom_mid_soft'), lowestHz: 122.8, size: [12, 9] },
-  { name: 'middle tom, hard', wav: () => sonicPiSample('drum_tom_mid_hard'), lowestHz: 123.5, size: [12, 9] },
-  { name: 'high tom, soft', wav: () => sonicPiSample('drum_tom_hi_soft'), lowestHz: 153.9, size: [10, 8] },
-  { name: 'high tom, hard', wav: () => sonicPiSample('drum_tom_hi_hard'), lowestHz: 154.3, size: [10, 8] },
+  { name: 'General MIDI note 41', wav: () => renderNote(DRUM_CHANNEL, 0, 41), lowestHz: 48.0, size: [18, 16] },
+  { name: 'General MIDI note 43', wav: () => renderNote(DRUM_CHANNEL, 0, 43), lowestHz: 72.2, size: [16, 16] },
+  { name: 'General MIDI note 45', wav: () => renderNote(DRUM_CHANNEL, 0, 45), lowestHz: 72.4, size: [14, 12] },
+  { name: 'General MIDI note 47', wav: () => renderNote(DRUM_CHANNEL, 0, 47), lowestHz: 91.0, size: [13, 10] },
+  { name: 'General MIDI note 48', wav: () => renderNote(DRUM_CHANNEL, 0, 48), lowestHz: 96.8, size: [12, 9] },
+  { name: 'General MIDI note 50', wav: () => renderNote(DRUM_CHANNEL, 0, 50), lowestHz: 107.5, size: [10, 8] },
+  { name: 'low tom, soft', wav: () => sonicPiSample('drum_tom_lo_soft'), lowestHz: 90.6, size: [14, 12] },
+  { name: 'low tom, hard', wav: () => sonicPiSample('drum_tom_lo_hard'), lowestHz: 90.3, size: [14, 12] },
+  { name: 'middle tom, soft', wav: () => sonicPiSample('drum_tom_mid_soft'), lowestHz: 120.1, size: [12, 9] },
+  { name: 'middle tom, hard', wav: () => sonicPiSample('drum_tom_mid_hard'), lowestHz: 120.6, size: [12, 9] },
+  { name: 'high tom, soft', wav: () => sonicPiSample('drum_tom_hi_soft'), lowestHz: 151.4, size: [10, 8] },
+  { name: 'high tom, hard', wav: () => sonicPiSample('drum_tom_hi_hard'), lowestHz: 151.3, size: [10, 8] },
 ] as const
 
 describe('a real tom', () => {
@@ -45,22 +56,32 @@ describe('a real tom', () => {
 
   for (const { name, wav, lowestHz, size } of TOMS) {
     it(`(${name}) is read with its lowest line as (0,1), or its reading is marked doubtful`, () => {
-      const outcome = read(wav(), tom(size[0], size[1]))
+      const outcome = readOnce(name, wav, tom(size[0], size[1]))
       if (outcome.kind === 'refused') {
         expect(['too-short', 'not-a-drum', 'no-tap', 'clipped']).toContain(outcome.refusal.code)
         return
       }
       const { reading } = outcome
       const off = Math.abs(1200 * Math.log2(reading.fundamentalHz / lowestHz))
-      // 60 cents: a hard stroke still glides inside the window that the outside value was taken from.
+      // 60 cents: what is left of a glide of 250 cents and more; the outside values hold some of it themselves.
       expect(off < 60 || reading.doubtful, `fundamental ${reading.fundamentalHz.toFixed(1)} Hz for ${lowestHz} Hz, confidence ${reading.confidence}`).toBe(true)
     })
   }
 
+  it('tells of the glide of all twelve strokes: none of them was soft', () => {
+    for (const { name, wav, size } of TOMS) {
+      const outcome = readOnce(name, wav, tom(size[0], size[1]))
+      if (outcome.kind === 'refused') continue
+      expect(outcome.reading.warnings.map(w => w.code), name).toContain('pitch-glide')
+      expect(outcome.reading.glide?.share, name).toBeGreaterThan(0.04) // the phase of the analytic signal falls by 13 to 25 % from 20 ms on
+      expect(outcome.reading.glide?.share, name).toBeLessThan(0.27) // the largest of these, and a tenth
+    }
+  })
+
   for (const size of ['lo', 'mid', 'hi'] as const) {
     it(`(${size}) has the same pitch at rest after a soft and a hard stroke, where both readings are sure`, () => {
       const instrument = { lo: tom(14, 12), mid: tom(12, 9), hi: tom(10, 8) }[size]
-      const [soft, hard] = [read(sonicPiSample(`drum_tom_${size}_soft`), instrument), read(sonicPiSample(`drum_tom_${size}_hard`), instrument)]
+      const [soft, hard] = (['soft', 'hard'] as const).map(stroke => readOnce(`${{ lo: 'low', mid: 'middle', hi: 'high' }[size]} tom, ${stroke}`, () => sonicPiSample(`drum_tom_${size}_${stroke}`), instrument)) as [AnalysisOutcome, AnalysisOutcome]
       if (soft.kind === 'refused' || hard.kind === 'refused') throw new Error('a clear stroke was refused')
       const ratio = hard.reading.fundamentalHz / soft.reading.fundamentalHz
       const sure = !soft.reading.doubtful && !hard.reading.doubtful
