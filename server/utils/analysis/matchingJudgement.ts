@@ -43,7 +43,7 @@ export function budgetAndConfidence({ context, fits, request, strained }: ToJudg
   const rival = fits.find(fit => Math.abs(Math.log(fit.tensionNPerM / best.tensionNPerM)) > different)
   const odds = rival ? Math.exp(TEMPER * (best.score - rival.score)) : Infinity
   const few = trusted.filter(match => !match.mode.air).length < 2
-  const unsound = strained || lowestMissing(best, trusted, request)
+  const unsound = strained || lowestMissing(best, trusted, request) || neverAtRest(trusted)
   const poor = unsound || budget.scatter > DOUBTFUL_SCATTER || explained < DOUBTFUL_EXPLAINED
   const fitQuality = Math.min(1, explained / 0.9) * (few || unsound ? 0.5 : 1) * Math.min(1, 1.6 / Math.max(budget.scatter, 1e-3))
   const doubtful = few || poor || odds < DOUBTFUL_ODDS
@@ -73,6 +73,16 @@ function twoHeadsOf(context: MatchingContext, best: TensionFit, budget: TensionB
   if (other.u95NPerM > UNSURE_OTHER * other.nPerM) unsure.push(struck === 'batter' ? 'resonant' : 'batter')
   if (!lowest.every(mode => best.matched.some(match => match.mode === mode && match.weight > TRUSTED))) unsure.push('coupling')
   return { struck, other, unsure }
+}
+
+const LOUD_DB = -12
+const MOST_RESTLESS = 0.012
+/** A tone that air damps hard is unsure by its own width; a glide makes a slow one unsure by a good part of it. */
+const RESTLESS_WIDTHS = 0.3
+/** After a very hard stroke not one of the loud tones is known at rest to this share of its frequency (95 %). */
+function neverAtRest(trusted: MatchedLines[]): boolean {
+  const loud = trusted.flatMap(match => match.lines).filter(line => line.levelDb > LOUD_DB)
+  return loud.length > 0 && loud.every(({ line }) => 2 * line.standardErrorHz > MOST_RESTLESS * line.frequencyHz && line.standardErrorHz > RESTLESS_WIDTHS * line.gammaPerS / (2 * Math.PI))
 }
 
 /** A tap with nothing resting on the centre sounds the lowest (0,1); a bowl alone may swallow it. A reading without it stands on one leg. */
