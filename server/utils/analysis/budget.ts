@@ -18,6 +18,8 @@ export interface TensionBudget {
 const PRIOR_FREEDOM = 5
 /** No reading repeats better: the hand, the bench and the film's creep. Relative, one standard deviation. */
 const LEAST_REPEATABILITY = 0.0003
+/** Another tap sounds other modes, each with its own error of the model: this share of that comes anew with every tap. */
+const OTHER_MODES = 0.8
 
 /** Two-sided 95 % quantile of Student's t, within 0.3 % from 2 degrees of freedom on. Source: Abramowitz & Stegun 26.7.5. */
 export function studentT95(freedom: number): number {
@@ -66,7 +68,7 @@ export function tensionBudget(context: MatchingContext, fit: TensionFit, request
   const variance = parts.reduce((sum, part) => sum + part.relative ** 2, 0)
   const tension = fit.tensionNPerM
   const coverage = studentT95(variance ** 2 / parts.reduce((sum, part) => sum + part.relative ** 4 / part.freedom, 1e-30))
-  const repeat = Math.hypot(LEAST_REPEATABILITY, ...parts.filter(part => part.repeatable).map(part => part.relative))
+  const repeat = Math.hypot(LEAST_REPEATABILITY, OTHER_MODES * Math.sqrt(spread), ...parts.filter(part => part.repeatable).map(part => part.relative))
   return {
     lines: parts.map(({ name, kind, relative, source, repeatable }) => ({ name, kind, standardNPerM: relative * tension, share: relative ** 2 / variance, source, repeatable })),
     u95NPerM: coverage * Math.sqrt(variance) * tension,

@@ -64,6 +64,13 @@ function rankedFits(context: MatchingContext, naming: MatchingContext, input: Sc
   }
   const full = finalists.map(fit => fitTension(naming, near, fit.state, FULL_FIT))
   full.sort((a, b) => b.score - a.score)
+  if (context.twoHeads && full[0]) {
+    // The same two wave speeds on the other way round sound much alike: that reading is always asked too.
+    const { state } = full[0]
+    const exchanged = { ...state, lnTension: state.lnOther - context.otherOffset, lnOther: state.lnTension + context.otherOffset }
+    full.push(fitTension(naming, near, exchanged, FULL_FIT))
+    full.sort((a, b) => b.score - a.score)
+  }
   return full
 }
 

@@ -25,7 +25,7 @@ const PRIORS: Record<Construction, ModelPriors> = {
   'frame': { airAxisymmetric: 0.03, airOthers: 0.015, edgeFactor: 0.2, axisymmetricError: 0.001, othersError: 0.0007, airResonanceError: 0.02 },
   'open': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.005, othersError: 0.001, airResonanceError: 0.02 },
   'kettle': { airAxisymmetric: 0.1, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.004, othersError: 0.001, airResonanceError: 0.02 },
-  'double-headed': { airAxisymmetric: 0.08, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.003, othersError: 0.0012, airResonanceError: 0.02 },
+  'double-headed': { airAxisymmetric: 0.08, airOthers: 0.03, edgeFactor: 0.2, axisymmetricError: 0.004, othersError: 0.0018, airResonanceError: 0.02 },
 }
 
 /** How far the model may be off for this construction: standard deviations of natural logarithms, dimensionless. */
