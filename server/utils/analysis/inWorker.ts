@@ -10,7 +10,7 @@ const queue = createUploadsFirst()
 /** Starts the analysis threads; called at start-up so that the first upload finds one warm. */
 export function startAnalysis(): AnalysisPool {
   // The worker's address is known only once the server runs, so not at module load.
-  return pool ??= createAnalysisPool(workerUrl(), { onError: error => log.error({ err: error }, 'analysis thread failed') })
+  return pool ??= createAnalysisPool(workerUrl(), { behind: true, onError: error => log.error({ err: error }, 'analysis thread failed') })
 }
 
 /**

@@ -77,7 +77,7 @@ export interface RingLook {
   found: SearchResult
 }
 
-/** True for a tone that does not decay: hum, a fan. */
+/** True for a tone that does not decay within seconds: hum, a fan. gammaPerS is its decay rate, 1/s. */
 export const isSteady = (tone: { gammaPerS: number }) => tone.gammaPerS < Math.log(1000) / STEADY_T60_S
 
 /** Finds the lines of a ring; see linesOf. */

@@ -1,4 +1,5 @@
 import { Piscina } from 'piscina'
+import { BEHIND } from '../../workers/lowPriority'
 import type { BothHeadsReading, HeadCalibration } from '../../../shared/types/reading'
 import type { TappedReading } from './matchingBoth'
 import type { KnownTension } from './matchingCalibration'
@@ -18,6 +19,8 @@ export interface AnalysisPool {
 export interface PoolOptions {
   threads?: number
   timeLimitMs?: number
+  /** Threads let everything else on the machine go first: for a server, whose own thread answers every request. */
+  behind?: boolean
   /** Told of a thread that failed outside a reading; readings reject by themselves. */
   onError?: (error: unknown) => void
 }
@@ -53,6 +56,7 @@ export function createAnalysisPool(workerUrl: URL, options: PoolOptions = {}): A
     maxThreads,
     idleTimeout: 60_000,
     resourceLimits: { maxOldGenerationSizeMb: MAX_HEAP_MB },
+    argv: options.behind ? [BEHIND] : [],
   })
   // Without a listener a thread that cannot start would end the whole process.
   piscina.on('error', error => options.onError?.(error))

@@ -10,7 +10,7 @@ export function solveSymmetric(matrix: Float64Array, b: Float64Array, damping: n
   return factor ? backSubstitute(factor, b, size) : undefined
 }
 
-/** Inverse of a symmetric positive definite matrix; undefined where it is not. */
+/** Inverse of a symmetric positive definite matrix of size rows, row by row, in the inverse of its unit; undefined where it is not. */
 export function invertSymmetric(matrix: Float64Array, size: number): Float64Array | undefined {
   const factor = cholesky(matrix, size, 0)
   if (!factor) return undefined
