@@ -14,6 +14,11 @@ export function sixteenths(turns: number): string {
   return parts === 0 ? '0' : `${parts > 0 ? '+' : MINUS}${Math.abs(parts)}/16`
 }
 
+/** False for a sheet that left every rod as it was: no arrow says which way. */
+export function isTurned({ meanTurns }: { meanTurns: number }): boolean {
+  return Math.abs(meanTurns) >= 0.005
+}
+
 /** 'Tighten, clockwise, three sixteenths'. */
 export function turnInWords(turns: number): string {
   const parts = toSixteenths(turns)
