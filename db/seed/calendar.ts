@@ -14,25 +14,30 @@ const roomTemperatureC = (at: Date, random: SeededRandom) => {
 }
 
 /**
- * Two years of visits: film creeps, so the tension found falls from one visit to the next; now and then the maker turns
- * the rods, and the visit right after shows the wanted tension again. Newest last, all before now.
+ * Two years of visits at most: film creeps, so the tension found falls from one visit to the next; now and then the maker
+ * turns the rods, and the visit right after shows the wanted tension again. Newest last, within the last weeks.
  */
 export function visitsOf({ now, wantedNPerM, visits, yearlyLoss }: CalendarOptions, random: SeededRandom): Visit[] {
-  const list: Visit[] = []
   const gapDays = 720 / visits
-  let daysAgo = 700 + random.between(0, 25)
+  const found: { day: number, share: number, retuned: boolean }[] = []
+  let day = 0
   let share = random.between(0.9, 1.04)
-  let justTurned = false
-  while (daysAgo > 1 && list.length < visits) {
-    const at = new Date(now.getTime() - daysAgo * DAY_MS)
-    // Benches work from eight to six.
-    at.setUTCHours(8 + Math.floor(random.uniform() * 10), Math.floor(random.uniform() * 60), Math.floor(random.uniform() * 60))
-    const retuned: boolean = !justTurned && Math.abs(share - 1) > 0.035
-    list.push({ at, tensionNPerM: wantedNPerM * share, temperatureC: roomTemperatureC(at, random), retuned })
-    const step = retuned ? random.between(0.01, 0.05) : gapDays * random.between(0.6, 1.4)
+  for (let i = 0; i < visits; i++) {
+    const retuned = !found.at(-1)?.retuned && Math.abs(share - 1) > 0.035
+    found.push({ day, share, retuned })
+    const step = retuned ? random.between(0.03, 0.12) : gapDays * random.between(0.6, 1.2)
     share = retuned ? 1 + 0.006 * random.normal() : share - yearlyLoss * step / 365 + 0.002 * random.normal()
-    justTurned = retuned
-    daysAgo -= step
+    day += step
   }
-  return list
+  const lastDaysAgo = random.between(2, 45)
+  return found.map(({ day: at, share: of, retuned }) => {
+    const date = new Date(now.getTime() - (lastDaysAgo + found.at(-1)!.day - at) * DAY_MS)
+    return { at: inWorkingHours(date), tensionNPerM: wantedNPerM * of, temperatureC: roomTemperatureC(date, random), retuned }
+  })
+}
+
+/** Benches work from eight to six. Order within a day is kept. */
+function inWorkingHours(date: Date): Date {
+  const dayStart = Math.floor(date.getTime() / DAY_MS) * DAY_MS
+  return new Date(dayStart + (8 + 10 * (date.getTime() - dayStart) / DAY_MS) * 3600_000)
 }
