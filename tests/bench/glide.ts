@@ -9,7 +9,7 @@
 import { simulateTap } from '../support/drum'
 import { CONSTRUCTIONS, drawCase } from '../support/drum/cases'
 import { judge, requestFor } from '../unit/accuracy/readTap'
-import type { AnalysedReading } from '../../server/utils/analysis/types'
+import type { AnalysedReading } from '../../shared/types/reading'
 
 const option = (name: string): string | undefined => process.argv.find(word => word.startsWith(`--${name}=`))?.split('=')[1]
 const drums = Math.min(50, Number(process.argv.slice(2).find(word => /^\d+$/.test(word)) ?? 4))

@@ -3,7 +3,7 @@ import { existsSync, readdirSync } from 'node:fs'
 import { join } from 'node:path'
 import type { InstrumentInput, InstrumentView } from '../../shared/schemas/instrument'
 import type { RecordingAnswer } from '../../shared/schemas/reading'
-import type { AnalysedReading } from '../../server/utils/analysis/types'
+import type { AnalysedReading } from '../../shared/types/reading'
 import { type SimTap, simulateTap, writeWav16 } from './drum'
 import { type Answer, type Client, database, stack } from './stack'
 

@@ -4,7 +4,7 @@ import type { PriorKind } from './matchingNuisance'
 import { EDGE_MEAN, INPUT_UNCERTAINTY } from './matchingPriors'
 import type { TensionFit } from './tensionFit'
 import { solveWeighted } from './tensionSolve'
-import type { BudgetLine } from './types'
+import type { BudgetLine } from '../../../shared/types/reading'
 
 export interface TensionBudget {
   lines: BudgetLine[]

@@ -1,5 +1,6 @@
 import type { LineFindings } from './lines'
-import type { AnalysedReading, AnalysisRequest } from './types'
+import type { AnalysedReading } from '../../../shared/types/reading'
+import type { AnalysisRequest } from './types'
 
 /** What matching needs of the request: all but the sound. A round is explained as edge taps at every rod together. */
 export type ExplainRequest = Omit<AnalysisRequest, 'wav'>

@@ -1,6 +1,6 @@
 import type { Ring } from './lines'
 import { powerOf, ringWindow, spectrumOf } from './spectrum'
-import type { SoundFacts } from './types'
+import type { SoundFacts } from '../../../shared/types/reading'
 
 const WAVEFORM_COLUMNS = 1200
 const SPECTRUM_POINTS = 900

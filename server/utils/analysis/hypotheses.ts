@@ -1,6 +1,7 @@
 import type { MatchingContext } from './matchingContext'
 import type { ScoredMode, ScoreInput } from './matchingInput'
-import { assignLines, explainedShare, lineEvidence, scoreHypothesis } from './matchingScore'
+import { assignedShare, assignLines } from './matchingAssign'
+import { lineEvidence, scoreHypothesis } from './matchingScore'
 import { RATIO_SPREAD } from './matchingPriors'
 import { MOST_RATIO, modeTables, type ModeTrack } from './matchingTables'
 
@@ -58,7 +59,7 @@ export function scanHypotheses(context: MatchingContext, input: ScoreInput): Can
   const open: Candidate[] = []
   const consider = (lnTension: number, ratio: number, modes: ScoredMode[]) => {
     const assignment = assignLines(modes, input)
-    const explained = explainedShare(input, assignment)
+    const explained = assignedShare(input, assignment)
     mostExplained = Math.max(mostExplained, explained)
     if (explained < HOPELESS * mostExplained) return
     open.push({ lnTension, ratio, score: lineEvidence(modes, input, assignment) - 0.5 * (ratio / RATIO_SPREAD) ** 2 })

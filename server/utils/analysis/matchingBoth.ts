@@ -1,4 +1,4 @@
-import type { BothHeadsReading, HeadTension, MatchedMode, PairTone } from '../../../shared/types/reading'
+import type { AnalysedReading, BothHeadsReading, HeadSide, HeadTension, MatchedMode, PairTone, ReadingWarning } from '../../../shared/types/reading'
 import { studentT95 } from './budget'
 import type { ExplainRequest } from './explanation'
 import { fitBoth, type BothFit, type Ear } from './matchingBothFit'
@@ -8,7 +8,7 @@ import { matchedModes } from './matchingReport'
 import type { LineFindings, SpectralLine } from './lines'
 import { gainsOn } from './tensionSolve'
 import { stateFrom } from './tensionFit'
-import type { AnalysedInstrument, AnalysedReading, HeadSide, ReadingWarning, Strike } from './types'
+import type { AnalysedInstrument, Strike } from './types'
 import { ANALYSIS_VERSION } from './version'
 
 /** A stored reading of one tap on a double-headed drum, as far as reading both heads together needs it. */

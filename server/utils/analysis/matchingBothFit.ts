@@ -2,10 +2,11 @@ import type { PredictedMode } from '../../../shared/acoustics'
 import type { MatchingContext } from './matchingContext'
 import type { ScoreInput } from './matchingInput'
 import { UNKNOWN, UNKNOWNS, modeGradient, priorEquations } from './matchingNuisance'
-import { assignLines, scoreHypothesis } from './matchingScore'
+import { assignLines } from './matchingAssign'
+import { scoreHypothesis } from './matchingScore'
 import { LEAST_WIDEN, matchedLines, moved, movedModes, predictAt, scoredModes, unknownsOf, type FitState, type MatchedLines } from './tensionFit'
 import { solveWeighted, type FitRow } from './tensionSolve'
-import type { HeadSide } from './types'
+import type { HeadSide } from '../../../shared/types/reading'
 
 /** One tap of several on the same drum: its lines, and the drum as seen from the head that was tapped. */
 export interface Ear { side: HeadSide, context: MatchingContext, input: ScoreInput }

@@ -1,6 +1,6 @@
 import type { LineFindings, SpectralLine } from './lines'
 import type { MatchedLines, TensionFit } from './tensionFit'
-import type { HeadSide } from './types'
+import type { HeadSide } from '../../../shared/types/reading'
 
 const MAINS_HZ = [50, 60]
 /** A line counts as a multiple of the mains within this, Hz. */

@@ -5,7 +5,7 @@ import type { MatchingContext } from './matchingContext'
 import { UNKNOWN, UNKNOWNS } from './matchingNuisance'
 import { namingPriors } from './matchingPriors'
 import type { MatchedLines, TensionFit } from './tensionFit'
-import type { ReadingWarning, TwoHeads } from './types'
+import type { ReadingWarning, TwoHeads } from '../../../shared/types/reading'
 
 /** Errors of neighbouring lines are not independent, so odds are tempered before they are believed. */
 const TEMPER = 0.5

@@ -2,7 +2,7 @@ import type { PredictedMode } from '../../../shared/acoustics'
 import { t60FromGamma, type LineFindings } from './lines'
 import type { MatchedLines, TensionFit } from './tensionFit'
 import { causeFacts, likelyCause } from './matchingCauses'
-import type { HeadSide, MatchedMode, UnexplainedPeak } from './types'
+import type { HeadSide, MatchedMode, UnexplainedPeak } from '../../../shared/types/reading'
 
 /** A line with less weight in the fit than this is listed as unexplained. */
 const TRUSTED = 0.1

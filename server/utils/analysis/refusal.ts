@@ -1,4 +1,4 @@
-import type { Refusal, RefusalCode } from './types'
+import type { Refusal, RefusalCode } from '../../../shared/types/reading'
 
 /** Thrown by any step of the analysis that finds that no reading can be had; analyseRecording turns it into an answer. */
 export class RefusalError extends Error {

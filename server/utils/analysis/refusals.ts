@@ -4,7 +4,7 @@ import type { LineFindings, Ring } from './lines'
 import { RefusalError } from './refusal'
 import { AFTER_ONSET_S, meanPower } from './ring'
 import type { Tap } from './taps'
-import type { ReadingWarning } from './types'
+import type { ReadingWarning } from '../../../shared/types/reading'
 
 const SHORTEST_RECORDING_S = 0.1
 /** Below -60 dB of full scale even a 16 bit recording of a tap has only ten bits left. */

@@ -4,7 +4,8 @@ import type { MatchingContext } from './matchingContext'
 import { UNKNOWN, modeGradient, priorEquations } from './matchingNuisance'
 import { modeModelError, unevenError } from './matchingPriors'
 import type { ScoreInput, ScoredLine, ScoredMode } from './matchingInput'
-import { assignLines, PAIR_LEEWAY, scoreHypothesis } from './matchingScore'
+import { assignLines, PAIR_LEEWAY } from './matchingAssign'
+import { scoreHypothesis } from './matchingScore'
 import { solveWeighted, type FitRow } from './tensionSolve'
 
 /** A mode and the line or pair of lines taken for it. */

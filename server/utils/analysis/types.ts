@@ -2,10 +2,7 @@
 
 import type { AnalysedReading, HeadCalibration, HeadSide, Refusal, SoundFacts } from '../../../shared/types/reading'
 
-export type { AnalysedReading, BudgetLine, MatchedMode, ReadingWarning, Refusal, RefusalCode, RodTension, SoundFacts, TwoHeads, UnexplainedPeak } from '../../../shared/types/reading'
-
 export type Construction = 'open' | 'frame' | 'double-headed' | 'kettle' | 'fixture'
-export type { HeadCalibration, HeadSide }
 export type Strike = 'centre' | 'edge' | 'round'
 
 /** One head as the analysis sees it; SI. */

@@ -4,7 +4,7 @@ import type { HeadRow, InstrumentRow } from '../../../db/instruments.table'
 import type { CalibrationRow } from '../../../db/rereading.table'
 import type { SignedInUser } from '../../../shared/types/roles'
 import { filmStress } from '../../../shared/acoustics/film'
-import type { AnalysedReading, RefusalCode, SoundFacts } from '../analysis/types'
+import type { AnalysedReading, RefusalCode, SoundFacts } from '../../../shared/types/reading'
 import { ANALYSIS_VERSION } from '../analysis/version'
 import { toAnalysedHead } from './headContext'
 

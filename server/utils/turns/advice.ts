@@ -1,6 +1,7 @@
 import { type HeadFilm, filmStress } from '../../../shared/acoustics'
 import type { RodTurns, TurnSheetView } from '../../../shared/schemas/turnSheet'
-import type { Construction, RodTension } from '../analysis/types'
+import type { RodTension } from '../../../shared/types/reading'
+import type { Construction } from '../analysis/types'
 import { DomainError } from '../core/errors'
 import { cautionsFor } from './cautions'
 import { crossOrder } from './crossOrder'

@@ -1,7 +1,7 @@
 import { airAt, createDrumModel, type HeadFilm } from '../../../shared/acoustics'
 import type { HeadRow } from '../../../db/instruments.table'
 import type { ReadingRow } from '../../../db/readings.table'
-import type { AnalysedReading } from '../analysis/types'
+import type { AnalysedReading } from '../../../shared/types/reading'
 import { type HeadContext, toAnalysedHead, toAnalysedInstrument } from '../readings/headContext'
 import type { TurnSituation } from './advice'
 import { type Kappa, KAPPA_PRIOR } from './kappa'

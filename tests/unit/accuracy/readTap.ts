@@ -1,6 +1,7 @@
 /** From a simulated case to what the analysis takes, and from its answer to errors against the truth. */
 import { analyseRecording } from '../../../server/utils/analysis/analyse'
-import type { AnalysedHead, AnalysedInstrument, AnalysedReading, AnalysisOutcome, AnalysisRequest } from '../../../server/utils/analysis/types'
+import type { AnalysedReading } from '../../../shared/types/reading'
+import type { AnalysedHead, AnalysedInstrument, AnalysisOutcome, AnalysisRequest } from '../../../server/utils/analysis/types'
 import { simulateTap, writeWav16 } from '../../support/drum'
 import type { SimHead, SimResult, SimTap, SimTruth } from '../../support/drum'
 import type { FilmKind, Place } from '../../support/drum/cases'

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { explainLines } from '../../../server/utils/analysis/matching'
 import { readBothHeads, type TappedReading } from '../../../server/utils/analysis/matchingBoth'
-import type { HeadSide } from '../../../server/utils/analysis/types'
+import type { HeadSide } from '../../../shared/types/reading'
 import { simulateTap } from '../../support/drum'
 import { drawCase } from '../../support/drum/cases'
 import { analyseRecording } from '../../../server/utils/analysis/analyse'
