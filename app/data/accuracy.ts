@@ -47,7 +47,7 @@ export const MEASURED: readonly MeasuredTable[] = [
       ['Double-headed', '91 %', '2.2 %', '0.68 %'],
       ['All 300', '94 %', '2.0 %', '0.68 %'],
     ],
-    note: 'One of 60 double-headed taps was wrong by over 10 % without a mark.',
+    note: 'One of 60 double-headed taps was wrong by over 10 % without a mark. Of 200 more (40 --seed=13001 --inputs) the interval held 97 %, and none was wrong.',
   },
   {
     title: 'A hard stroke against a soft one',
