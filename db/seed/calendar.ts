@@ -7,10 +7,10 @@ export interface Visit { at: Date, tensionNPerM: number, temperatureC: number, r
 
 export interface CalendarOptions { now: Date, wantedNPerM: number, visits: number, /** Loss of tension in a year, relative. */ yearlyLoss: number }
 
-/** A workshop that is warmer in July than in January, by the day of the year. */
+/** A workshop that is warmer in July than in January, read off a coarse thermometer; few temperatures make the demo load fast. */
 const roomTemperatureC = (at: Date, random: SeededRandom) => {
   const yearShare = (at.getTime() / DAY_MS % 365.25) / 365.25
-  return Math.round(19.5 - 3 * Math.cos(2 * Math.PI * yearShare) + random.normal())
+  return 2 * Math.round((19.5 - 3 * Math.cos(2 * Math.PI * yearShare) + 0.5 * random.normal()) / 2)
 }
 
 /**
