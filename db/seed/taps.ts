@@ -20,7 +20,7 @@ const SAMPLE_RATE_HZ = 16_000
 const DURATION_S = 1.7
 const QUIET_S = 0.3
 /** Up to here modes are made: beyond, a tap of a soft stick has nothing left. */
-const HIGHEST_HZ = 2200
+const HIGHEST_HZ = 1400
 const FULL_SCALE = 32_767
 
 /**
