@@ -57,7 +57,7 @@ export async function seedBench(bench: Bench, people: Map<string, SignedInUser>)
 /** Two heads cost the analysis ten times what one does, and the demo is to stand within a minute: fewer visits for them. */
 function drumHistory(drum: DemoDrum, view: InstrumentView): DrumHistory {
   const head = (side: 'batter' | 'resonant') => view.heads.find(candidate => candidate.side === side)!.id
-  const batter: HeadHistory = { headId: head('batter'), drum, wantedNPerM: drum.tensionNPerM, otherNPerM: drum.resonant?.tensionNPerM, visits: drum.resonant ? 2 : drum.owner ? 5 : 3 }
+  const batter: HeadHistory = { headId: head('batter'), drum, wantedNPerM: drum.tensionNPerM, otherNPerM: drum.resonant?.tensionNPerM, visits: drum.resonant ? 2 : drum.owner ? 4 : 2 }
   return { batter, resonant: drum.resonant && { headId: head('resonant'), drum, wantedNPerM: drum.resonant.tensionNPerM, visits: 1 } }
 }
 
