@@ -21,6 +21,11 @@ export function constructionName(value: string): string {
   return CONSTRUCTIONS.find(entry => entry.value === value)?.label ?? value
 }
 
+/** The heads of a drum as choices of one of them. */
+export function headChoices<Side extends string>(heads: readonly { side: Side }[] | undefined): { value: Side, label: string }[] {
+  return (heads ?? []).map(({ side }) => ({ value: side, label: side === 'batter' ? 'Batter side' : 'Resonant side' }))
+}
+
 /** 'PET, single ply, 250 um'. */
 export function filmName(film: { material: string, plies: number, thicknessUm: number }, units: UnitSystem): string {
   const material = MATERIALS.find(entry => entry.value === film.material)?.label ?? film.material

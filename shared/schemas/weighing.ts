@@ -21,7 +21,7 @@ export const filmWeighingSchema = z.object({
 export type FilmWeighingInput = z.infer<typeof filmWeighingSchema>
 
 /** 95 % of a normal distribution lie within this many standard deviations. Source: JCGM 100:2008, table G.1. */
-const COVERAGE_95 = 1.96
+export const COVERAGE_95 = 1.96
 
 /**
  * Areal density of a weighed piece with its 95 % uncertainty, kg/m2. A strip counts as the disc of the same area and the

@@ -1,5 +1,6 @@
 import type { CalibrationBody } from '../../../shared/schemas/calibration'
 import type { InstrumentView } from '../../../shared/schemas/instrument'
+import { COVERAGE_95 } from '../../../shared/schemas/weighing'
 import type { AnalysedReading, HeadCalibration, Measured } from '../../../shared/types/reading'
 import type { SignedInUser } from '../../../shared/types/roles'
 import type { ReadingRow } from '../../../db/readings.table'
@@ -14,9 +15,6 @@ import { endCalibrations, findCalibration } from './calibrations'
 import { getInstrument } from './find'
 
 type Actor = Pick<SignedInUser, 'id' | 'role'>
-
-/** 95 % of a normal distribution as standard deviations. Source: JCGM 100:2008, table G.1. */
-const COVERAGE_95 = 1.96
 
 /**
  * Calibrates a head by one of its readings at a tension that is known otherwise. An earlier calibration is taken off; older

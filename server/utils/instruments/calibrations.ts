@@ -1,5 +1,6 @@
 import type { CalibrationView } from '../../../shared/schemas/calibration'
 import { USUAL_U95 } from '../../../shared/schemas/instrument'
+import { COVERAGE_95 } from '../../../shared/schemas/weighing'
 import type { HeadCalibration } from '../../../shared/types/reading'
 import type { CalibrationRow } from '../../../db/rereading.table'
 import type { DB, Kysely, Transaction } from '../core/db'
@@ -40,7 +41,6 @@ export async function endCalibrations(trx: Transaction<DB>, headIds: string[], {
 
 /** Place of ln areal density among the five of HeadCalibration.covariance. */
 const DENSITY = 3
-const COVERAGE_95 = 1.96
 
 /** The air and the edge are the instrument's and stay known; the film's areal density is the new one's, as stated. */
 export async function moveCalibrationToNewFilm(trx: Transaction<DB>, { by_name: _name, id: _id, created_at: _at, ...row }: CalibrationRecord, film: { areal_density_kg_m2: number, areal_density_u95_kg_m2: number | null }, by: string, at: Date): Promise<void> {

@@ -1,5 +1,6 @@
 import type { HeadRow, InstrumentRow } from '../../../db/instruments.table'
 import type { CalibrationRow } from '../../../db/rereading.table'
+import { COVERAGE_95 } from '../../../shared/schemas/weighing'
 import type { HeadCalibration } from '../../../shared/types/reading'
 import type { SignedInUser } from '../../../shared/types/roles'
 import { visibleTo } from '../instruments/access'
@@ -21,9 +22,6 @@ export async function getHeadContext(db: Kysely<DB>, headId: string, user: Pick<
   if (!head) throw notFound('This head')
   return { instrument, head, other: heads.find(row => row.id !== headId) ?? null, calibration: await findCalibration(db, headId) ?? null }
 }
-
-/** What is stated as 95 % of a normal distribution, as a standard uncertainty. Source: JCGM 100:2008, table G.1. */
-const COVERAGE_95 = 1.96
 
 /** Rows in trade units become the analysis's SI; the struck head stands first. */
 export function toAnalysedInstrument({ instrument, head, other, calibration }: HeadContext): AnalysedInstrument {
